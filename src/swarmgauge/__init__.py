@@ -1,0 +1,24 @@
+"""Electron swarms in gases: coefficients, distributions and their errors from cross sections."""
+
+from importlib import import_module
+from typing import Any
+
+_HOME = {
+    "Estimate": "swarm",
+    "Field": "swarm",
+    "Gas": "gas",
+    "Mixture": "gas",
+    "Process": "gas",
+    "load_set": "gas",
+    "open_results": "campaign",
+    "simulate": "swarm",
+}
+__all__ = sorted(_HOME)
+__version__ = "0.1.0"
+
+
+def __getattr__(name: str) -> Any:
+    """Load a public name on first use, so that ``swarmgauge --help`` needs neither numba nor scipy."""
+    if name not in _HOME:
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+    return getattr(import_module(f".{_HOME[name]}", __name__), name)
