@@ -1,0 +1,252 @@
+"""One cohort: windows of free steps, then the comb that brings the population back to its size."""
+
+import hashlib
+from functools import cache
+from pathlib import Path
+from typing import NamedTuple
+
+import numpy as np
+from numba import config, njit
+
+from .bits import load, store
+from .collide import collide, retire, swap_electrons
+from .flight import fly
+from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, score_window_end
+from .lanes import (
+    ELECTRON_FIELDS,
+    FLIGHT_CODES,
+    FLIGHT_NUMBERS,
+    LANE_SUMS,
+    LEFT,
+    SUM_ENERGY,
+    SUM_TIME,
+    SUM_Z,
+    WEIGHT,
+    X,
+    Y,
+    Z,
+)
+from .lookup import ATTACHMENT, IONIZATION, LAB_CELLS, SPEED_CELLS
+from .record import list_ended, list_rare, record
+from .streams import next_word, one_to_two
+
+# Status of a cohort
+RUNNING, FULL, EXTINCT, STUCK = 0, 1, 2, 3
+
+# Columns of the series, one row a window
+SERIES_TIME, SERIES_ENERGY, SERIES_Z, SERIES_PATH, SERIES_ALIVE = 0, 1, 2, 3, 4
+SERIES_COLUMNS = 5
+
+
+class Workspace(NamedTuple):
+    """All arrays of one cohort that change; see `lanes`, `record` and `history` for the layouts."""
+
+    streams: np.ndarray  # (4 * lanes,) uint64, for the flights
+    spare_streams: np.ndarray  # (4 * lanes,) uint64, for work of variable length
+    electrons: np.ndarray  # (ELECTRON_FIELDS * lanes,)
+    other_electrons: np.ndarray  # the same, target of the comb
+    history: np.ndarray  # (lanes * 3 * lags,)
+    other_history: np.ndarray  # the same, target of the next window
+    sums: np.ndarray  # (LANE_SUMS * lanes,)
+    numbers: np.ndarray  # (FLIGHT_NUMBERS * lanes,)
+    codes: np.ndarray  # (FLIGHT_CODES * lanes,) int64
+    words: np.ndarray  # (lanes,) uint64
+    rare: np.ndarray  # (lanes,) int64
+    ended: np.ndarray  # (lanes,) int64
+    histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
+    lab_histogram: np.ndarray  # (LAB_CELLS * 2,)
+    lag_sums: np.ndarray  # (LAG_SUMS * lags,)
+    point_sums: np.ndarray  # (POINT_SUMS,)
+    counts: np.ndarray  # (4,) int64; flights by outcome
+    events: np.ndarray  # (P + 1,) int64; events seen of each non-elastic process
+
+
+def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspace:
+    """Zeroed arrays of a cohort with `lanes` lanes."""
+    return Workspace(
+        streams=np.zeros(4 * lanes, dtype=np.uint64),
+        spare_streams=np.zeros(4 * lanes, dtype=np.uint64),
+        electrons=np.zeros(ELECTRON_FIELDS * lanes),
+        other_electrons=np.zeros(ELECTRON_FIELDS * lanes),
+        history=np.zeros(lanes * 3 * lags),
+        other_history=np.zeros(lanes * 3 * lags),
+        sums=np.zeros(LANE_SUMS * lanes),
+        numbers=np.zeros(FLIGHT_NUMBERS * lanes),
+        codes=np.zeros(FLIGHT_CODES * lanes, dtype=np.int64),
+        words=np.zeros(lanes, dtype=np.uint64),
+        rare=np.zeros(lanes + 1, dtype=np.int64),
+        ended=np.zeros(lanes + 1, dtype=np.int64),
+        histogram=np.zeros(gases * SPEED_CELLS * 2),
+        lab_histogram=np.zeros(LAB_CELLS * 2),
+        lag_sums=np.zeros(LAG_SUMS * lags),
+        point_sums=np.zeros(POINT_SUMS),
+        counts=np.zeros(4, dtype=np.int64),
+        events=np.zeros(processes + 1, dtype=np.int64),
+    )
+
+
+@njit(forceinline=True)
+def comb(alive, size, electrons, target, spare_streams, lanes):
+    """Systematic resampling of `alive` weighted electrons to `size` electrons of weight 1, in lane order.
+
+    Teeth at (j + u) W / size, u one random number and W the total weight: every electron is taken weight x size / W
+    times on average. Displacements since the start of the window begin anew.
+    """
+    total = 0.0
+    for lane in range(alive):
+        total += load(electrons, lane + WEIGHT * lanes)
+    spacing = total / size
+    tooth = (one_to_two(next_word(spare_streams, 0, lanes)) - 1.0) * spacing
+    lane = 0
+    upper = load(electrons, WEIGHT * lanes)
+    for j in range(size):
+        while upper <= tooth and lane < alive - 1:
+            lane += 1
+            upper += load(electrons, lane + WEIGHT * lanes)
+        for field in range(ELECTRON_FIELDS):
+            store(target, j + field * lanes, load(electrons, lane + field * lanes))
+        store(target, j + X * lanes, 0.0)
+        store(target, j + Y * lanes, 0.0)
+        store(target, j + Z * lanes, 0.0)
+        store(target, j + WEIGHT * lanes, 1.0)
+        tooth += spacing
+
+
+@njit(forceinline=True)
+def add_lane_sums(sums, lanes, series, window):
+    """Move the lane sums of a window, in lane order, into row `window` of the series."""
+    time, energy, z = 0.0, 0.0, 0.0
+    for lane in range(lanes):
+        time += sums[lane + SUM_TIME * lanes]
+        energy += sums[lane + SUM_ENERGY * lanes]
+        z += sums[lane + SUM_Z * lanes]
+    sums[:] = 0.0
+    series[window, SERIES_TIME] = time
+    series[window, SERIES_ENERGY] = energy
+    series[window, SERIES_Z] = z
+
+
+@njit(forceinline=True)
+def rare_pass(active, alive, tables, electrons, history, work, window_time, measuring, lanes, lags):
+    """All non-elastic events of one step. Returns the number of electrons alive, or -1 if no lane is spare.
+
+    A child starts its path at its birth, an attached electron ends its own: the flux sums are settled here.
+    """
+    for at in range(list_rare(active, work.codes, work.rare, lanes)):
+        if alive >= lanes:
+            return -1
+        lane = work.rare[at]
+        elapsed = window_time - load(electrons, lane + LEFT * lanes)
+        process = collide(
+            lane, alive, tables, electrons, work.numbers, work.codes, work.words, work.spare_streams, lanes
+        )
+        if process < 0:
+            continue
+        if measuring:
+            work.events[process] += 1
+        kind = tables.kind[process]
+        if kind == IONIZATION:
+            score_path(alive, -1.0, elapsed, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
+            alive += 1
+        elif kind == ATTACHMENT:
+            score_path(lane, 1.0, elapsed, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
+    return alive
+
+
+@njit(forceinline=True)
+def step(active, alive, tables, electrons, history, work, window_time, field, measuring, lanes, lags, gases, thermal):
+    """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
+    fly(
+        active, tables, field, work.streams, electrons, work.sums, work.numbers, work.codes, work.words,
+        lanes, gases, thermal,
+    )  # fmt: skip
+    if measuring:
+        record(active, work.numbers, work.codes, work.histogram, work.lab_histogram, work.counts, lanes)
+    born_from = alive
+    alive = rare_pass(active, alive, tables, electrons, history, work, window_time, measuring, lanes, lags)
+    ended = list_ended(active, electrons, work.ended, lanes)
+    for child in range(born_from, alive):
+        swap_electrons(electrons, child, active, lanes)
+        active += 1
+    if alive < 0:
+        return active, alive
+    return retire(work.ended, ended, active, alive, electrons, lanes)
+
+
+@njit(forceinline=True)
+def end_window(alive, tables, electrons, history, extended, work, window_time, lanes, lags):
+    """Settle all paths, lengthen the histories and take the sums over the population at the end of a window."""
+    for lane in range(alive):
+        score_path(lane, 1.0, window_time, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
+        extend_history(lane, electrons, history, extended, lanes, lags)
+        score_window_end(lane, tables, electrons, extended, work.lag_sums, work.point_sums, lanes, lags)
+
+
+@njit(forceinline=True)
+def windows(tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal):
+    """Run as many windows as `series` has rows; returns the status.
+
+    tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
+    size : electrons at the start of every window; lags : windows in a displacement history; window_time and field in
+    kernel units; measuring : whether histograms and counts are taken (the path and lag sums always are); max_steps :
+    bound on the steps of one window; lanes, gases, thermal : compile-time constants.
+    The target arrays of `work` hold the electrons and histories at the end where the number of windows is odd.
+    """
+    electrons, target = work.electrons, work.other_electrons
+    history, extended = work.history, work.other_history
+    for window in range(series.shape[0]):
+        for lane in range(size):
+            store(electrons, lane + LEFT * lanes, window_time)
+        active, alive, steps = size, size, 0
+        path_before = work.point_sums[PATH]
+        while active > 0:
+            active, alive = step(
+                active, alive, tables, electrons, history, work, window_time, field, measuring, lanes, lags, gases, thermal
+            )
+            steps += 1
+            if alive < 0:
+                return FULL
+            if steps > max_steps:
+                return STUCK
+        end_window(alive, tables, electrons, history, extended, work, window_time, lanes, lags)
+        add_lane_sums(work.sums, lanes, series, window)
+        series[window, SERIES_PATH] = work.point_sums[PATH] - path_before
+        series[window, SERIES_ALIVE] = alive
+        if alive == 0:
+            return EXTINCT
+        comb(alive, size, electrons, target, work.spare_streams, lanes)
+        electrons, target = target, electrons
+        history, extended = extended, history
+    return RUNNING
+
+
+@cache
+def kernel_digest() -> str:
+    """SHA-256 of the sources of this package, hexadecimal: the kernel's version."""
+    digest = hashlib.sha256()
+    for path in sorted(Path(__file__).parent.glob("*.py")):
+        digest.update(path.read_bytes())
+    return digest.hexdigest()
+
+
+@cache
+def compiled_windows(lanes: int, gases: int, thermal: bool):
+    """The entry kernel for a number of lanes and gases, cold or thermal; same arguments as `windows` less the last three.
+
+    numba does not notice edits in other files: the digest in the closure makes it compile anew after any edit of this
+    package. Where no folder can be written, nothing is cached.
+    """
+    digest = kernel_digest()
+
+    def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
+        digest  # noqa: B018 - part of the cache key
+        return windows(
+            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal
+        )
+
+    if config.DISABLE_JIT:
+        return run_windows
+    try:
+        return njit(cache=True, nogil=True, error_model="numpy")(run_windows)
+    except RuntimeError:
+        return njit(nogil=True, error_model="numpy")(run_windows)

@@ -1,0 +1,104 @@
+"""Displacement histories, and the sums from which flux and bulk diffusion follow.
+
+Every electron carries the displacements of its line of ancestors over the last k windows, k = 1 .. lags, cumulated:
+Z_k is the way gone in the last k complete windows. With z the way since the start of the present window, Z_k + z over a
+long enough memory has (K. Kumar, H. R. Skullerud and R. E. Robson, Aust. J. Phys. 33, 343 (1980), for the transport
+coefficients; the sums are derived in DEVELOPERS.md)
+
+    D_flux = Cov(Z + z, v_z),   W_bulk = <v_z> + Cov(Z + z, R),
+    D_bulk = D_flux + 1/2 <(dZ^2 - <dZ^2>) R>,   R = nu_ionization - nu_attachment.
+
+Flux sums are exact time integrals: along one path the integral of (Z + z) v_z dt is Z z + z^2 / 2. They are taken at
+the end of each electron's path (window end or attachment); a child, which copies z of its parent, takes what stood
+there at its birth with a minus sign. The R sums are taken over the population at the end of each window.
+"""
+
+from numba import njit
+
+from .bits import load, load_table, store
+from .lanes import SLOT, VX, VY, VZ, WEIGHT, X, Y, Z
+from .lookup import speed_cell
+
+# Rows of the lag sums, (LAG_SUMS, lags); weighted sums over electrons
+LAG_Z_TIME = 0  # Z_k t: integral of Z_k over time
+LAG_Z_VZ = 1  # Z_k z: integral of Z_k v_z
+LAG_XY_VXY = 2  # X_k x + Y_k y
+LAG_Z, LAG_ZZ, LAG_Z_R, LAG_ZZ_R, LAG_TT, LAG_TT_R = 3, 4, 5, 6, 7, 8  # at window ends; T^2 = X^2 + Y^2
+LAG_SUMS = 9
+
+# Point sums, (POINT_SUMS,)
+PATH = 0  # integral of v_z
+PATH_SQUARED = 1  # z^2 / 2: integral of z v_z
+PATH_ACROSS_SQUARED = 2  # (x^2 + y^2) / 2
+END_WEIGHT, END_R = 3, 4  # at window ends: 1 and R
+POINT_SUMS = 5
+
+
+@njit(forceinline=True)
+def score_path(lane, sign, elapsed, electrons, history, lag_sums, point_sums, lanes, lags):
+    """Add (sign +1, end of a path) or take away (-1, birth) the flux sums of the electron in `lane`.
+
+    elapsed : time since the start of the window. history : (lanes, 3, lags), flat; cumulated displacements.
+    """
+    weight = sign * load(electrons, lane + WEIGHT * lanes)
+    x = load(electrons, lane + X * lanes)
+    y = load(electrons, lane + Y * lanes)
+    z = load(electrons, lane + Z * lanes)
+    point_sums[PATH] += weight * z
+    point_sums[PATH_SQUARED] += 0.5 * weight * z * z
+    point_sums[PATH_ACROSS_SQUARED] += 0.5 * weight * (x * x + y * y)
+    row = 3 * lags * int(load(electrons, lane + SLOT * lanes))
+    for k in range(lags):
+        past_z = load(history, row + 2 * lags + k)
+        past_across = load(history, row + k) * x + load(history, row + lags + k) * y
+        at = LAG_Z_TIME * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * elapsed * past_z)
+        at = LAG_Z_VZ * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * z * past_z)
+        at = LAG_XY_VXY * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * past_across)
+
+
+@njit(forceinline=True)
+def extend_history(lane, electrons, history, extended, lanes, lags):
+    """Write the history of the electron in `lane`, longer by the window that ends, to row `lane` of `extended`."""
+    row = 3 * lags * int(load(electrons, lane + SLOT * lanes))
+    new = 3 * lags * lane
+    for axis in range(3):
+        way = load(electrons, lane + (X + axis) * lanes)
+        store(extended, new + axis * lags, way)
+        for k in range(1, lags):
+            store(extended, new + axis * lags + k, load(history, row + axis * lags + k - 1) + way)
+    store(electrons, lane + SLOT * lanes, float(lane))
+
+
+@njit(forceinline=True)
+def score_window_end(lane, tables, electrons, extended, lag_sums, point_sums, lanes, lags):
+    """Add the R sums of the electron in `lane`, whose history has just been extended."""
+    weight = load(electrons, lane + WEIGHT * lanes)
+    vx = load(electrons, lane + VX * lanes)
+    vy = load(electrons, lane + VY * lanes)
+    vz = load(electrons, lane + VZ * lanes)
+    cell, fraction = speed_cell((vx * vx + vy * vy + vz * vz) ** 0.5)
+    low = load_table(tables.net_frequency, 2 * cell)
+    rate = low + fraction * (load_table(tables.net_frequency, 2 * cell + 1) - low)
+    point_sums[END_WEIGHT] += weight
+    point_sums[END_R] += weight * rate
+    row = 3 * lags * lane
+    for k in range(lags):
+        x = load(extended, row + k)
+        y = load(extended, row + lags + k)
+        z = load(extended, row + 2 * lags + k)
+        across = x * x + y * y
+        at = LAG_Z * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * z)
+        at = LAG_ZZ * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * z * z)
+        at = LAG_Z_R * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * rate * z)
+        at = LAG_ZZ_R * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * rate * z * z)
+        at = LAG_TT * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * across)
+        at = LAG_TT_R * lags + k
+        store(lag_sums, at, load(lag_sums, at) + weight * rate * across)

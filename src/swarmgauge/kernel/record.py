@@ -1,0 +1,64 @@
+"""The record pass: time averages from the candidates of one step, and the lists of lanes that need more work.
+
+A candidate is a flight that ended by the exponential law. The time average of g is the sum over candidates of
+weight x g / M over the total weighted time, M being the majorant at the flight's start: candidates occur at rate M, so
+that every dt contributes M dt x g / M = g dt on average. Counting candidates equally would be wrong by the variation
+of M. A candidate of one gas (probability M_gas / M) counts with 1 / M_gas towards that gas.
+"""
+
+from numba import njit
+
+from .bits import load, store
+from .lanes import (
+    FRACTION,
+    GAS_CELL,
+    INVERSE_M,
+    INVERSE_M_GAS,
+    LAB_CELL,
+    LEFT,
+    OUTCOME,
+    RARE,
+    VZ_BEFORE,
+)
+
+
+@njit(forceinline=True)
+def record(active, numbers, codes, histogram, lab_histogram, counts, lanes):
+    """Score the candidates of one step.
+
+    histogram : (G * SPEED_CELLS, 2), flat; sums of weight / M_gas and of position in the cell x weight / M_gas.
+    lab_histogram : (LAB_CELLS, 2), flat; sums of weight / M and of v_z x weight / M, v_z before the collision.
+    counts : (4,) int64; flights by outcome. All three are changed in place.
+    """
+    for i in range(active):
+        counts[load(codes, i + OUTCOME * lanes)] += 1
+        inverse_gas = load(numbers, i + INVERSE_M_GAS * lanes)
+        inverse = load(numbers, i + INVERSE_M * lanes)
+        cell = 2 * load(codes, i + GAS_CELL * lanes)
+        store(histogram, cell, load(histogram, cell) + inverse_gas)
+        at = load(histogram, cell + 1) + inverse_gas * load(numbers, i + FRACTION * lanes)
+        store(histogram, cell + 1, at)
+        cell = 2 * load(codes, i + LAB_CELL * lanes)
+        store(lab_histogram, cell, load(lab_histogram, cell) + inverse)
+        at = load(lab_histogram, cell + 1) + inverse * load(numbers, i + VZ_BEFORE * lanes)
+        store(lab_histogram, cell + 1, at)
+
+
+@njit(forceinline=True)
+def list_rare(active, codes, rare, lanes):
+    """Fill `rare` with the lanes that wait for a rare event, in rising order; return their number."""
+    count = 0
+    for i in range(active):
+        store(rare, count, i)
+        count += 1 if load(codes, i + OUTCOME * lanes) == RARE else 0
+    return count
+
+
+@njit(forceinline=True)
+def list_ended(active, electrons, ended, lanes):
+    """Fill `ended` with the lanes whose electron reached the window's end or was attached; return their number."""
+    count = 0
+    for i in range(active):
+        store(ended, count, i)
+        count += 1 if load(electrons, i + LEFT * lanes) <= 0.0 else 0
+    return count

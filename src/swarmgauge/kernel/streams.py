@@ -1,0 +1,93 @@
+"""Random numbers: one xoshiro256++ stream per lane, seeded by SplitMix64.
+
+Lane L of a cohort takes words 4L .. 4L+3 of one SplitMix64 sequence, whose start is a hash of (seed, stream key,
+cohort). Streams belong to lanes, never to electrons, threads or workers.
+
+References: D. Blackman and S. Vigna, ACM Trans. Math. Softw. 47, 36 (2021) (xoshiro256++);
+G. L. Steele, D. Lea and C. H. Flood, OOPSLA 2014 (SplitMix64).
+"""
+
+import hashlib
+
+import numpy as np
+from numba import njit
+
+from .bits import double_of, load, store
+from .functions import ONE_BITS
+
+_GOLDEN = np.uint64(0x9E3779B97F4A7C15)
+_U12 = np.uint64(12)
+_U17 = np.uint64(17)
+_U19 = np.uint64(19)
+_U20 = np.uint64(20)
+_U23 = np.uint64(23)
+_U32 = np.uint64(32)
+_U41 = np.uint64(41)
+_U45 = np.uint64(45)
+_LOW32 = np.uint64(0xFFFFFFFF)
+
+
+def splitmix_words(start: int, count: int) -> np.ndarray:
+    """The first `count` outputs of SplitMix64 from state `start`; shape (count,), uint64."""
+    with np.errstate(over="ignore"):
+        z = np.uint64(start & 0xFFFFFFFFFFFFFFFF) + _GOLDEN * np.arange(1, count + 1, dtype=np.uint64)
+        z = (z ^ (z >> np.uint64(30))) * np.uint64(0xBF58476D1CE4E5B9)
+        z = (z ^ (z >> np.uint64(27))) * np.uint64(0x94D049BB133111EB)
+        return z ^ (z >> np.uint64(31))
+
+
+def cohort_start(seed: int, stream_key: str, cohort: int) -> int:
+    """Start of the SplitMix64 sequence of one cohort: 64 bits of a SHA-256 over seed, key and cohort number."""
+    text = f"{seed}/{stream_key}/{cohort}".encode()
+    return int.from_bytes(hashlib.sha256(text).digest()[:8], "little")
+
+
+def seeded_streams(start: int, lanes: int) -> np.ndarray:
+    """States of `lanes` streams; shape (4 * lanes,), uint64, word j of lane L at j * lanes + L."""
+    return np.ascontiguousarray(splitmix_words(start, 4 * lanes).reshape(lanes, 4).T).ravel()
+
+
+@njit(forceinline=True)
+def advance_state(s0, s1, s2, s3):
+    """One step of xoshiro256++: (output, new state words)."""
+    total = s0 + s3
+    output = ((total << _U23) | (total >> _U41)) + s0
+    shifted = s1 << _U17
+    s2 ^= s0
+    s3 ^= s1
+    s1 ^= s2
+    s0 ^= s3
+    s2 ^= shifted
+    s3 = (s3 << _U45) | (s3 >> _U19)
+    return output, s0, s1, s2, s3
+
+
+@njit(forceinline=True)
+def next_word(streams, lane, lanes):
+    """The next 64 bits of one lane's stream, which moves on; for work outside the vector loop."""
+    output, s0, s1, s2, s3 = advance_state(
+        load(streams, lane), load(streams, lane + lanes), load(streams, lane + 2 * lanes), load(streams, lane + 3 * lanes)
+    )
+    store(streams, lane, s0)
+    store(streams, lane + lanes, s1)
+    store(streams, lane + 2 * lanes, s2)
+    store(streams, lane + 3 * lanes, s3)
+    return output
+
+
+@njit(forceinline=True)
+def one_to_two(word):
+    """A double in [1, 2) from the upper 52 bits: bits are set, since uint64 to double is slow without AVX-512DQ."""
+    return double_of(np.int64(word >> _U12) | ONE_BITS)
+
+
+@njit(forceinline=True)
+def upper_one_to_two(word):
+    """A double in [1, 2) from the upper 32 bits."""
+    return double_of(np.int64((word >> _U32) << _U20) | ONE_BITS)
+
+
+@njit(forceinline=True)
+def lower_one_to_two(word):
+    """A double in [1, 2) from the lower 32 bits."""
+    return double_of(np.int64((word & _LOW32) << _U20) | ONE_BITS)
