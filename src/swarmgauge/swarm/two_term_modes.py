@@ -15,8 +15,8 @@ _LARGEST_STEPS = 100
 def steady(operator: EnergyOperator, guess: float = 0.0) -> tuple[Balance, np.ndarray]:
     """The balance at the growth rate of the steady distribution, and that distribution, (n,) with number 1.
 
-    At a given growth rate nu, the top-down solution leaves one balance open: q = nu - net . f electrons per electron
-    must be put in at zero energy. Where f > 0 everywhere and q >= 0, nu is at or above the largest eigenvalue, that of
+    At a given growth rate nu, the solution of all balances but that of the joint leaves q = nu - net . f electrons per
+    electron to be put in there. Where f > 0 everywhere and q >= 0, nu is at or above the largest eigenvalue, that of
     the only positive steady distribution (L. Collatz, Math. Z. 48, 221 (1942)); elsewhere it is below. The root of q
     is found by secants between these bounds.
     """

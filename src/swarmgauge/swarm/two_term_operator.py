@@ -13,15 +13,17 @@ Cell centres are centroids of sqrt(e): number and energy of a cell are weight x 
 transfer by a collision is shared between two neighbouring cells so that both are conserved.
 
 Summed over all cells above an edge the balance says: flux through the edge = what falls through it + growth above it.
-No process lifts an electron, so these sums form an upper triangular system, solved from the top down in O(n^2) without
-subtracting large numbers. (A superelastic process is one more transfer with a negative loss; the sums then hold as they
-are, but the system is full and wants an LU decomposition.)
+No process lifts an electron, so above a chosen cell, the `joint` near the mean energy, these sums form an upper
+triangular system, solved from the top down without subtracting large numbers. Below the joint, where f may fall towards
+zero energy if attachment is strong, the plain balances of the cells are solved by LU decomposition. The balance of the
+joint itself stays open, to be closed by the growth rate. (A superelastic process is one more transfer, with a negative
+loss; the joint must then lie above all cells from which it lifts electrons across it.)
 """
 
 from functools import cached_property
 
 import numpy as np
-from scipy.linalg import solve_triangular
+from scipy.linalg import lu_factor, lu_solve, solve_triangular
 
 from .two_term_curves import CollisionCurves
 
@@ -50,15 +52,15 @@ class Grid:
 class EnergyOperator:
     """Collisions and field on a grid, all but the growth rate.
 
-    field : E/N in V m^2, > 0; thermal_eV : kT of the gas, eV, >= 0.
+    field : E/N in V m^2, > 0; thermal_eV : kT of the gas, eV, >= 0; joint : cell whose balance stays open.
     events : (channels, n), integral of energy x cross section in each cell, per density of the target: events . f is
     the rate over sqrt(2e/m). Of a process with a threshold, what lies in a cell below the first edge above the
     threshold is carried into the next cell, since no electron at the cell's centre could pay for it.
     net : (n,), ionization minus attachment of the mixture, likewise.
     """
 
-    def __init__(self, curves: CollisionCurves, grid: Grid, field: float, thermal_eV: float):
-        self.curves, self.grid, self.field, self.thermal_eV = curves, grid, field, thermal_eV
+    def __init__(self, curves: CollisionCurves, grid: Grid, field: float, thermal_eV: float, joint: int):
+        self.curves, self.grid, self.field, self.thermal_eV, self.joint = curves, grid, field, thermal_eV, joint
         self.events = _payable(curves, grid)
         self.weights = np.array([channel.weight for channel in curves.channels])
         kinds = np.array([channel.process.kind for channel in curves.channels])
@@ -76,16 +78,20 @@ class EnergyOperator:
         return np.divide(own, self.friction, out=np.zeros_like(own), where=self.friction > 0.0)
 
     @cached_property
+    def transfers(self) -> np.ndarray:
+        """(n, n): change of the number in cell i by inelastic collisions, per f of cell j."""
+        return _transfers(self.curves, self.grid, self.events)
+
+    @cached_property
     def falling(self) -> np.ndarray:
-        """(n - 1, n): minus the change by collisions of the number above inner edge i + 1, per f of cell j."""
-        transfers = _transfers(self.curves, self.grid, self.events)
-        above = np.cumsum(transfers[:0:-1], axis=0)[::-1]
+        """(n - 1 - joint, n - joint): number that falls through the edges above the joint, per f of cells from it on."""
+        above = np.cumsum(self.transfers[: self.joint : -1, self.joint :], axis=0)[::-1]
         return np.asfortranarray(-above)
 
     @cached_property
     def number_above(self) -> np.ndarray:
-        """(n - 1, n): number above inner edge i + 1, per f of cell j."""
-        return np.asfortranarray(np.triu(np.broadcast_to(self.grid.weight, self.falling.shape), 1))
+        """Number above the same edges, per f of the same cells."""
+        return np.asfortranarray(np.triu(np.broadcast_to(self.grid.weight[self.joint :], self.falling.shape), 1))
 
     def at_growth(self, growth: float) -> "Balance":
         """The balance of a swarm with a given growth rate (over N sqrt(2e/m))."""
@@ -95,25 +101,44 @@ class EnergyOperator:
 class Balance:
     """The linear balance at a given growth rate.
 
-    conductance : (n - 1,), e / s between centres. system : (n - 1, n), upper triangular but for its last column: rows
-    are inner edges.
+    conductance : (n - 1,), e / s between centres. outrun : (n - 1,), where s is held because attachment removes
+    electrons about as fast as collisions turn them.
     """
 
     def __init__(self, operator: EnergyOperator, growth: float):
         self.operator, self.growth = operator, growth
         grid = operator.grid
-        bare = operator.momentum
-        effective = np.maximum(bare + growth / np.sqrt(grid.middle), _LEAST_MOMENTUM_SHARE * bare)
-        self.conductance = grid.middle / effective
+        least = _LEAST_MOMENTUM_SHARE * operator.momentum
+        effective = operator.momentum + growth / np.sqrt(grid.middle)
+        self.outrun = effective < least
+        self.conductance = grid.middle / np.maximum(effective, least)
         self.heating = operator.field**2 / 3.0 * self.conductance
         diffusion = self.heating + operator.thermal_eV * operator.friction
         drift = operator.friction * grid.step / diffusion
         self.down = diffusion / grid.step * _bernoulli(-drift)  # per f of the upper cell
         self.up = np.maximum(diffusion / grid.step * _bernoulli(drift), np.finfo(float).tiny)  # per f of the lower cell
-        self.system = operator.falling + growth * operator.number_above if growth else operator.falling.copy(order="F")
-        rows = np.arange(len(self.up))
-        self.system[rows, rows] -= self.up
-        self.system[rows, rows + 1] += self.down
+        self._upper = self._edge_balances()
+        self._lower_by_joint_on, self._lower = self._cell_balances()
+
+    def _edge_balances(self) -> np.ndarray:
+        """Balances of what is above the edges above the joint, upper triangular but for the last column."""
+        operator, joint = self.operator, self.operator.joint
+        system = operator.falling + self.growth * operator.number_above
+        edges = np.arange(len(system))
+        system[edges, edges] -= self.up[joint:]
+        system[edges, edges + 1] += self.down[joint:]
+        return system
+
+    def _cell_balances(self) -> tuple[np.ndarray, tuple]:
+        """Balances of the cells below the joint: coefficients of the cells from it on, and factors for those below."""
+        operator, joint = self.operator, self.operator.joint
+        system = -operator.transfers[:joint]
+        cells = np.arange(joint)
+        system[cells, cells] += self.growth * operator.grid.weight[:joint] + self.up[:joint]
+        system[cells[1:], cells[1:]] += self.down[: joint - 1]
+        system[cells[1:], cells[:-1]] -= self.up[: joint - 1]
+        system[cells, cells + 1] -= self.down[:joint]
+        return system[:, joint:], lu_factor(system[:, :joint], check_finite=False)
 
     def field_flux(self, f: np.ndarray) -> np.ndarray:
         """The field's part of the energy flux between centres, (n - 1,)."""
@@ -124,21 +149,27 @@ class Balance:
         return self.up * f[:-1] - self.down * f[1:] - self.field_flux(f)
 
     def homogeneous(self) -> np.ndarray:
-        """The solution of all rows with number 1, (n,); not finite where it spans more than a double can hold."""
-        f = np.append(self._from_top(-self.system[:, -1]), 1.0)
-        return f / f.max() / (self.operator.grid.weight @ (f / f.max()))
+        """The f with number 1 that solves all balances but the open one, (n,); not finite if it exceeds all numbers."""
+        f = self._solve(-self._upper[:, -1:], np.zeros((self.operator.joint, 1)), 1.0)[:, 0]
+        f /= f.max()
+        return f / (self.operator.grid.weight @ f)
 
     def forced(self, sources: np.ndarray, fluxes: np.ndarray) -> np.ndarray:
-        """Solutions with sources, zero in the last cell.
+        """The f that are zero in the highest cell and solve all balances but the open one, (n, k).
 
-        sources : (n, k), in each cell; fluxes : (n - 1, k), given parts of J between centres. Returns (n, k).
+        sources : (n, k), in each cell; fluxes : (n - 1, k), given parts of J between centres.
         """
-        above = np.cumsum(sources[:0:-1], axis=0)[::-1]
-        x = self._from_top(above + fluxes)
-        return np.concatenate([x, np.zeros((1, x.shape[1]))])
+        joint = self.operator.joint
+        above = np.cumsum(sources[:joint:-1], axis=0)[::-1] + fluxes[joint:]
+        return self._solve(above, sources[:joint] - np.diff(fluxes[:joint], axis=0, prepend=0.0), 0.0)
 
-    def _from_top(self, right: np.ndarray) -> np.ndarray:
-        return solve_triangular(self.system[:, :-1], right, check_finite=False)
+    def _solve(self, above: np.ndarray, cells: np.ndarray, highest: float) -> np.ndarray:
+        last = np.full((1, above.shape[1]), highest)
+        high = np.concatenate([solve_triangular(self._upper[:, :-1], above, check_finite=False), last])
+        if not np.isfinite(high).all():
+            return np.full((len(cells) + len(high), high.shape[1]), np.nan)
+        low = lu_solve(self._lower, cells - self._lower_by_joint_on @ high, check_finite=False)
+        return np.concatenate([low, high])
 
 
 def _bernoulli(x: np.ndarray) -> np.ndarray:
