@@ -29,7 +29,7 @@ _SMALLEST_FALL, _LARGEST_FALL, _WANTED_FALL = -30.0, -60.0, -33.0
 _ENOUGH_FALL = -27.0
 _MOST_TOPS = 60
 _LARGEST_OUTRUN = 0.001  # share of electrons
-_SHARE_OF_TAIL = 0.5  # part of the cells that follow the fall of ln f0; the others are equal in speed
+_SHARE_OF_TAIL = 0.35  # part of the cells that follow the fall of ln f0; the others are equal in speed
 _WEAK_FIELD_HEATING = 1e-10  # of the diffusion in energy by a warm gas: stands for E = 0
 
 

@@ -84,7 +84,7 @@ class EnergyOperator:
 
     @cached_property
     def falling(self) -> np.ndarray:
-        """(n - 1 - joint, n - joint): number that falls through the edges above the joint, per f of cells from it on."""
+        """(n - 1 - joint, n - joint): number falling through the edges above the joint, per f of cells from it on."""
         above = np.cumsum(self.transfers[: self.joint : -1, self.joint :], axis=0)[::-1]
         return np.asfortranarray(-above)
 
