@@ -81,7 +81,7 @@ def solve_two_term(mixture: Mixture, E_over_N_Td: float, *, cells: int = CELLS) 
     field = E_over_N_Td * TOWNSEND or _weak_field(curves, thermal_eV)
     rough = _rough_solution(curves, field, thermal_eV)
     grid = _fitted_grid(rough, cells)
-    joint = int(np.searchsorted(grid.centre, (rough.grid.weight * rough.grid.centre) @ rough.f))
+    joint = max(1, int(np.searchsorted(grid.centre, (rough.grid.weight * rough.grid.centre) @ rough.f)))
     balance, f = steady(EnergyOperator(curves, grid, field, thermal_eV, joint), guess=rough.balance.growth)
     if not np.isfinite(f).all():
         raise _no_distribution(field)

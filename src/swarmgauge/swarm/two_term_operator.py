@@ -16,8 +16,9 @@ Summed over all cells above an edge the balance says: flux through the edge = wh
 No process lifts an electron, so above a chosen cell, the `joint` near the mean energy, these sums form an upper
 triangular system, solved from the top down without subtracting large numbers. Below the joint, where f may fall towards
 zero energy if attachment is strong, the plain balances of the cells are solved by LU decomposition. The balance of the
-joint itself stays open, to be closed by the growth rate. (A superelastic process is one more transfer, with a negative
-loss; the joint must then lie above all cells from which it lifts electrons across it.)
+joint itself stays open, to be closed by the growth rate. (A superelastic process would be one more transfer, with a
+negative loss; the sums then have entries below the diagonal, and all cells want the LU decomposition, with f in units
+of an estimate so that the tail keeps its digits.)
 """
 
 from functools import cached_property
