@@ -140,7 +140,7 @@ def test_longitudinal_diffusion_of_hard_spheres_by_quadrature(model, field, temp
     expected = SPEED_1_EV * integral(e * g1 / 3)[-1]
     assert values["diffusion_L_times_N_flux"] == pytest.approx(expected, rel=1e-3)
     if temperature == 0.0:
-        # 0.491037: closed form, from memory; "about 1/2" in the abstract of Parker and Lowke, Phys. Rev. 181, 290 (1969).
+        # 0.491037: closed form, from memory; "about 1/2" in the abstract of Parker and Lowke (1969).
         ratio = values["diffusion_L_times_N_flux"] / values["diffusion_T_times_N_flux"]
         assert ratio == pytest.approx(0.491037, rel=1e-3)
 
@@ -419,6 +419,7 @@ def test_every_gas_over_the_whole_range(name, temperature):
     for field in (0.0, 0.001, 0.03, 1.0, 10.0, 100.0, 500.0, 2000.0):
         if field == temperature == 0.0:
             continue
+        # The cold gas is given a trace of warmth, as three-body attachment needs a density.
         mixture = Mixture(
             {name: 1.0}, temperature_K=temperature or 1e-6, pressure_Pa=1e-4 if temperature == 0.0 else 1e5
         )
