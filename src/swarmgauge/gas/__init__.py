@@ -1,0 +1,60 @@
+"""Cross-section sets of gases, their processes, and mixtures of them."""
+
+from importlib import import_module
+from typing import TYPE_CHECKING, Any
+
+from .errors import InputError, MixtureError, ProcessError, SetFileError
+
+if TYPE_CHECKING:
+    from .gas import Gas
+    from .laws import PowerLaw, Ramp, Table
+    from .library import load_named, load_named_or_path, shipped_sets
+    from .mixture import Mixture
+    from .process import Process, Sharing
+    from .schema import set_file_schema
+    from .setfile import load_set
+    from .writer import set_text, write_set
+
+__all__ = [
+    "Gas",
+    "InputError",
+    "Mixture",
+    "MixtureError",
+    "PowerLaw",
+    "Process",
+    "ProcessError",
+    "Ramp",
+    "SetFileError",
+    "Sharing",
+    "Table",
+    "load_named",
+    "load_named_or_path",
+    "load_set",
+    "set_file_schema",
+    "set_text",
+    "shipped_sets",
+    "write_set",
+]
+_HOME = {
+    "Gas": "gas",
+    "Mixture": "mixture",
+    "PowerLaw": "laws",
+    "Process": "process",
+    "Ramp": "laws",
+    "Sharing": "process",
+    "Table": "laws",
+    "load_named": "library",
+    "load_named_or_path": "library",
+    "load_set": "setfile",
+    "set_file_schema": "schema",
+    "set_text": "writer",
+    "shipped_sets": "library",
+    "write_set": "writer",
+}
+
+
+def __getattr__(name: str) -> Any:
+    """Load a public name on first use: numpy and pydantic are not needed for the errors alone."""
+    if name not in _HOME:
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+    return getattr(import_module(f".{_HOME[name]}", __name__), name)

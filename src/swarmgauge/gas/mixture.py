@@ -1,0 +1,189 @@
+"""A mixture of gases at a temperature, and which of their processes act."""
+
+import math
+from collections.abc import Iterable, Mapping
+from types import MappingProxyType
+from typing import Any
+
+import numpy as np
+
+from .constants import BOLTZMANN
+from .errors import MixtureError, suggestion
+from .gas import Gas
+from .library import load_named_or_path
+from .process import Process
+
+_SUM_TOLERANCE = 1e-6
+
+
+class Mixture:
+    """Gases with their fractions, the temperature and, where bodies collide in threes, the pressure.
+
+    Parameters
+    ----------
+    fractions : set to fraction (>= 0, sum 1 within 1e-6; used as they are). A set is a name in gases/, a path of a set
+        file, or a Gas. A set with fraction 0 is a trace: its rates are averaged and it does not act.
+    temperature_K : >= 0; 0 is the cold gas.
+    pressure_Pa : > 0; needed where three-body attachment takes part. N = p / kT.
+    leave_out : "<set>/<process>" of processes that shall not exist here.
+
+    Attributes
+    ----------
+    gases : tuple of Gas, sorted by name. fractions : ndarray, shape (n_gases,), in that order.
+    density_m3 : number density N, 1/m3, or None without pressure.
+
+    Raises MixtureError where these make no mixture, SetFileError where a set cannot be loaded.
+    """
+
+    def __init__(
+        self,
+        fractions: Mapping[str | Gas, float],
+        temperature_K: float = 0.0,
+        pressure_Pa: float | None = None,
+        leave_out: Iterable[str] = (),
+    ) -> None:
+        pairs = [(key if isinstance(key, Gas) else load_named_or_path(key), x) for key, x in fractions.items()]
+        pairs.sort(key=lambda pair: pair[0].name)
+        self.gases = tuple(gas for gas, _ in pairs)
+        self.fractions = _checked_fractions({gas.name: x for gas, x in pairs}, len(pairs))
+        self.temperature_K = _checked_temperature(temperature_K)
+        self.pressure_Pa = _checked_pressure(pressure_Pa, self.temperature_K)
+        self.leave_out = tuple(sorted(set([leave_out] if isinstance(leave_out, str) else leave_out)))
+        _check_left_out(self.leave_out, self.gases)
+        self._acting = MappingProxyType(
+            {
+                gas.name: tuple(p for p in gas.processes if f"{gas.name}/{p.id}" not in self.leave_out)
+                for gas in self.gases
+            }
+        )
+        self._check_elastic()
+        self._check_third_bodies()
+
+    @property
+    def density_m3(self) -> float | None:
+        """Number density of all gases together, 1/m3; None without a pressure."""
+        return None if self.pressure_Pa is None else self.pressure_Pa / (BOLTZMANN * self.temperature_K)
+
+    def acting(self, gas: Gas) -> tuple[Process, ...]:
+        """The processes of one of the gases that are not left out, passive ones too, by threshold."""
+        return self._acting[gas.name]
+
+    def third_bodies(self, gas: Gas, process: Process) -> dict[str, float]:
+        """Set name to efficiency of the gases in this mixture that can be the third body of a process of `gas`."""
+        body = process.third_body
+        if body is None:
+            return {}
+        if body == "any":
+            efficiency = {other.formula: 1.0 for other in self.gases}
+        else:
+            efficiency = {gas.formula: 1.0} if body == "self" else body
+        return {other.name: efficiency[other.formula] for other in self.gases if other.formula in efficiency}
+
+    def body_density_m3(self, gas: Gas, process: Process) -> float:
+        """Density of third bodies weighted by their efficiency, 1/m3; 1 for a two-body process."""
+        if process.third_body is None:
+            return 1.0
+        bodies = self.third_bodies(gas, process)
+        shares = [bodies.get(other.name, 0.0) * x for other, x in zip(self.gases, self.fractions, strict=True)]
+        assert self.density_m3 is not None  # checked at construction
+        return math.fsum(shares) * self.density_m3
+
+    def describe(self) -> str:
+        """The gases with their fractions, as "0.8 nitrogen-phelps1985 + 0.2 oxygen-lawton1978"."""
+        return " + ".join(f"{x:.6g} {gas.name}" for gas, x in zip(self.gases, self.fractions, strict=True))
+
+    def canonical(self) -> dict[str, Any]:
+        """All that acts on a swarm, as plain numbers and names that JSON can hold; equal physics gives equal ones."""
+        gases = [
+            {
+                **gas.canonical(),
+                "fraction": float(x),
+                "processes": [process.canonical() for process in self.acting(gas)],
+            }
+            for gas, x in zip(self.gases, self.fractions, strict=True)
+        ]
+        return {"temperature_K": self.temperature_K, "pressure_Pa": self.pressure_Pa, "gases": gases}
+
+    def __repr__(self) -> str:
+        pressure = "" if self.pressure_Pa is None else f", {self.pressure_Pa:g} Pa"
+        return f"Mixture({self.describe()}, {self.temperature_K:g} K{pressure})"
+
+    def _check_elastic(self) -> None:
+        for gas in self.gases:
+            if not any(process.kind == "elastic" and not process.passive for process in self.acting(gas)):
+                ids = ", ".join(process.id for process in self.acting(gas)) or "none"
+                raise MixtureError(
+                    f"set {gas.name} has no elastic process that acts (it has: {ids}): it is not for swarms, only for "
+                    "its processes alone. Use a complete set, or do not leave out the elastic process."
+                )
+
+    def _check_third_bodies(self) -> None:
+        if self.pressure_Pa is not None:
+            return
+        for gas in self.gases:
+            for process in self.acting(gas):
+                if process.third_body is not None:
+                    name = f"{gas.name}/{process.id}"
+                    raise MixtureError(
+                        f"process {name} needs a third body, so its rate depends on the density, and no pressure is "
+                        f'given. Give pressure_Pa (and a temperature), or leave_out = ["{name}"].'
+                    )
+
+
+def _number(value: Any, what: str) -> float:
+    if isinstance(value, bool) or not isinstance(value, int | float | np.integer | np.floating):
+        raise MixtureError(f"{what} = {value!r} is not a number. Write a number.")
+    return float(value)
+
+
+def _checked_fractions(fractions: dict[str, Any], count: int) -> np.ndarray:
+    if count == 0:
+        raise MixtureError('fractions is empty. Give at least one set, as { "argon-yamabe1983" = 1.0 }.')
+    if len(fractions) < count:
+        raise MixtureError(f"fractions: two sets have the same name (of {', '.join(fractions)}). Give each set once.")
+    values = []
+    for name, given in fractions.items():
+        value = _number(given, f"fraction of {name}")
+        if not 0.0 <= value <= 1.0 + _SUM_TOLERANCE:
+            raise MixtureError(f"fraction of {name} = {value:g} is outside 0 to 1. Give its part of all particles.")
+        values.append(value)
+    total = math.fsum(values)
+    if abs(total - 1.0) > _SUM_TOLERANCE:
+        raise MixtureError(
+            f"fractions of {', '.join(fractions)} sum to {total:.8g}, not to 1 within 1e-6. "
+            "Correct them; they are never renormalised."
+        )
+    array = np.array(values)
+    array.flags.writeable = False
+    return array
+
+
+def _checked_temperature(value: Any) -> float:
+    temperature = _number(value, "temperature_K")
+    if not 0.0 <= temperature <= 1e6:
+        raise MixtureError(f"temperature_K = {temperature:g} is not possible. Give 0 (cold gas) to 1e6.")
+    return temperature
+
+
+def _checked_pressure(value: Any, temperature: float) -> float | None:
+    if value is None:
+        return None
+    pressure = _number(value, "pressure_Pa")
+    if not 0.0 < pressure < math.inf:
+        raise MixtureError(f"pressure_Pa = {pressure:g} is not possible. Give a finite number above 0.")
+    if temperature == 0.0:
+        raise MixtureError(
+            f"pressure_Pa = {pressure:g} at temperature_K = 0: a cold gas has no pressure. "
+            "Give a temperature, or leave the pressure out."
+        )
+    return pressure
+
+
+def _check_left_out(leave_out: tuple[str, ...], gases: tuple[Gas, ...]) -> None:
+    known = [f"{gas.name}/{process.id}" for gas in gases for process in gas.processes]
+    for name in leave_out:
+        if name not in known:
+            raise MixtureError(
+                f'leave_out: "{name}" is not a process of this mixture.{suggestion(name, known)} '
+                "Write <set>/<process>; the sets are " + ", ".join(gas.name for gas in gases) + "."
+            )

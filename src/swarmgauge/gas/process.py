@@ -1,0 +1,185 @@
+"""One collision process: what an electron does to an atom or molecule, and how often."""
+
+import math
+from dataclasses import dataclass, field, fields
+from typing import Any, Literal
+
+import numpy as np
+
+from .errors import ProcessError, suggestion
+from .laws import Law, Table
+
+Kind = Literal["elastic", "excitation", "ionization", "attachment"]
+KINDS = ("elastic", "excitation", "ionization", "attachment")
+_NAME_SIGNS = frozenset("abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ0123456789._+-=()'")
+
+
+@dataclass(frozen=True)
+class Sharing:
+    """How the two electrons after an ionization share what is left of the energy.
+
+    kind : "uniform" (the ejected electron takes any part with equal probability), "equal" (half each) or "fixed" (the
+    ejected electron takes the `fraction`, 0 to 1, of it).
+    """
+
+    kind: Literal["uniform", "equal", "fixed"] = "uniform"
+    fraction: float = 0.5
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "fraction", float(self.fraction))
+        if self.kind not in ("uniform", "equal", "fixed"):
+            raise ProcessError(f'sharing "{self.kind}" is unknown. Use "uniform", "equal" or {{ fraction = 0.3 }}.')
+        if not 0.0 <= self.fraction <= 1.0:
+            raise ProcessError(
+                f"sharing: fraction = {self.fraction:g} is outside 0 to 1. "
+                "Give the part of the energy left that the ejected electron takes."
+            )
+
+
+@dataclass(frozen=True, eq=False)
+class Process:
+    """One collision process.
+
+    id : name within its set. kind : "elastic", "excitation", "ionization" or "attachment". threshold_eV : energy loss;
+    for attachment only the onset, which neither cuts nor costs energy. law : the cross section against energy.
+    sharing : of an ionization. degeneracy_lower, degeneracy_upper : statistical weights; lower : id of the lower level,
+    None for the ground state. third_body : None for two bodies; else the cross section is in m5, per m-3 of the third
+    body: "self", "any", or formula to efficiency. passive : averaged over the swarm, without acting on it.
+    relative_uncertainty : one standard deviation, None where not stated. scattering : angular law.
+    Raises ProcessError where these contradict each other.
+    """
+
+    id: str
+    kind: Kind
+    threshold_eV: float
+    law: Law
+    label: str = ""
+    source: str = ""
+    sharing: Sharing = field(default_factory=Sharing)
+    scattering: str = "isotropic"
+    degeneracy_lower: float | None = None
+    degeneracy_upper: float | None = None
+    lower: str | None = None
+    third_body: Any = None
+    passive: bool = False
+    relative_uncertainty: float | None = None
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "threshold_eV", float(self.threshold_eV))
+        if isinstance(self.third_body, dict):
+            bodies = {formula: float(efficiency) for formula, efficiency in sorted(self.third_body.items())}
+            object.__setattr__(self, "third_body", bodies)
+        check_name(self.id, "id")
+        if self.kind not in KINDS:
+            raise ProcessError(
+                f'kind = "{self.kind}" is unknown. Use one of {", ".join(KINDS)}.{suggestion(self.kind, KINDS)}'
+            )
+        _check_threshold(self)
+        _check_options(self)
+
+    def cross_section(self, energy_eV: np.ndarray) -> np.ndarray:
+        """Cross section at energies (any shape, eV >= 0), in m2, or m5 for three bodies.
+
+        Zero below the threshold of an excitation or ionization and below the first point of a table; elastic keeps the
+        first value below it.
+        """
+        energy = np.asarray(energy_eV, dtype=np.float64)
+        if self.kind == "elastic":
+            return self.law.value(np.maximum(energy, self.law.start_eV))
+        values = self.law.value(energy)
+        return np.where(energy >= self.threshold_eV, values, 0.0) if self.cut else values
+
+    @property
+    def cut(self) -> bool:
+        """Whether the cross section is zero below the threshold."""
+        return self.kind in ("excitation", "ionization")
+
+    @property
+    def breakpoints_eV(self) -> np.ndarray:
+        """Threshold and points of the table, rising, eV: where the cross section may bend or jump."""
+        return np.unique(np.append(self.law.breakpoints_eV, self.threshold_eV))
+
+    @property
+    def end_eV(self) -> float:
+        """Last tabulated energy, eV; infinite for formulas."""
+        return self.law.end_eV
+
+    def canonical(self) -> dict[str, Any]:
+        """All that acts on a swarm, as plain numbers and names that JSON can hold; equal physics gives equal ones."""
+        return {
+            "id": self.id,
+            "kind": self.kind,
+            "threshold_eV": self.threshold_eV,
+            "law": type(self.law).__name__,
+            **{f.name: _plain(getattr(self.law, f.name)) for f in fields(self.law)},
+            "sharing": [self.sharing.kind, self.sharing.fraction] if self.kind == "ionization" else None,
+            "scattering": self.scattering,
+            "degeneracies": [self.degeneracy_lower, self.degeneracy_upper],
+            "lower": self.lower,
+            "third_body": self.third_body,
+            "passive": self.passive,
+        }
+
+    def __repr__(self) -> str:
+        law = f"{len(self.law.energy_eV)} points" if isinstance(self.law, Table) else repr(self.law)
+        return f"Process({self.id}: {self.kind}, {self.threshold_eV:g} eV, {law})"
+
+
+def _plain(value: Any) -> Any:
+    return value.tolist() if isinstance(value, np.ndarray) else value
+
+
+def check_name(name: str, key: str) -> None:
+    """Refuse names that would not survive in `rate:<set>/<process>` or as a file name."""
+    if not name or not set(name) <= _NAME_SIGNS or name[0] in "._-":
+        raise ProcessError(
+            f"{key} = {name!r} cannot be a name. Use letters, digits and . _ + - = ( ) ' and begin with none of . _ -"
+        )
+
+
+def _check_threshold(process: Process) -> None:
+    threshold = process.threshold_eV
+    if not 0.0 <= threshold < math.inf:
+        raise ProcessError(f"threshold_eV = {threshold:g} is not possible. Give a finite number of 0 or more.")
+    if process.kind == "elastic" and threshold != 0.0:
+        raise ProcessError(f"threshold_eV = {threshold:g} for an elastic process. Set it to 0.")
+    if threshold > process.end_eV:
+        raise ProcessError(
+            f"threshold_eV = {threshold:g} lies above the end of the table ({process.end_eV:g} eV). "
+            "Correct the threshold or the energies (eV)."
+        )
+
+
+def _check_options(process: Process) -> None:
+    if process.sharing != Sharing() and process.kind != "ionization":
+        raise ProcessError(f"sharing is given for an {process.kind} process. Remove it; only ionization shares energy.")
+    if process.third_body is not None and process.kind != "attachment":
+        raise ProcessError(
+            f"third_body is given for an {process.kind} process. Remove it; only attachment can need one."
+        )
+    if process.scattering != "isotropic":
+        raise ProcessError(f'scattering = "{process.scattering}" is not available: only "isotropic". Remove the key.')
+    _check_third_body(process.third_body)
+    for name in ("degeneracy_lower", "degeneracy_upper", "lower"):
+        if getattr(process, name) is not None and process.kind != "excitation":
+            raise ProcessError(
+                f"{name} is given for an {process.kind} process. Remove it; only excitations have levels."
+            )
+    for name in ("degeneracy_lower", "degeneracy_upper", "relative_uncertainty"):
+        value = getattr(process, name)
+        if value is not None and not 0.0 < value < math.inf:
+            raise ProcessError(f"{name} = {value:g} is not possible. Give a finite number above 0.")
+
+
+def _check_third_body(body: Any) -> None:
+    if body is None or body in ("self", "any"):
+        return
+    if not isinstance(body, dict) or not body:
+        raise ProcessError(
+            f'third_body = {body!r} is unknown. Use "self", "any" or formulas with efficiencies, as {{ O2 = 1.0 }}.'
+        )
+    for formula, efficiency in body.items():
+        if not 0.0 <= efficiency < math.inf:
+            raise ProcessError(
+                f"third_body: {formula} = {efficiency:g} is not possible. Give a finite efficiency of 0 or more."
+            )

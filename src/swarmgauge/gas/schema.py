@@ -1,0 +1,99 @@
+"""The form of a set file: its keys and what kind of value each holds. `laws`, `process` and `gas` check the numbers."""
+
+from typing import Annotated, Any, Literal
+
+from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag
+
+Number = Annotated[float, Field(allow_inf_nan=True)]  # laws and processes say better what is wrong with nan and inf
+
+
+def _form(value: Any) -> str:
+    return "table" if isinstance(value, dict) else "word"
+
+
+class _Entry(BaseModel):
+    model_config = ConfigDict(extra="forbid", strict=True)
+
+
+class PowerEntry(_Entry):
+    """A power of energy that follows the last point of a table."""
+
+    power: Number = Field(description="exponent p: last value x (energy / last energy)^p")
+
+
+class PowerLawEntry(_Entry):
+    """at_1_eV_m2 x (energy / 1 eV)^exponent; zero below the threshold."""
+
+    at_1_eV_m2: Number = Field(description="cross section at 1 eV, m2 (m5 for three bodies)")
+    exponent: Number = Field(description="0 for a constant")
+
+
+class RampEntry(_Entry):
+    """slope_m2_per_eV x (energy - from_eV) above from_eV."""
+
+    from_eV: Number = Field(description="energy where it starts, eV")
+    slope_m2_per_eV: Number = Field(description="slope, m2/eV")
+
+
+class FractionEntry(_Entry):
+    """The ejected electron takes a fixed fraction of the energy that is left after an ionization."""
+
+    fraction: Number = Field(description="0 to 1")
+
+
+Beyond = Annotated[
+    Annotated[Literal["zero", "hold"], Tag("word")] | Annotated[PowerEntry, Tag("table")], Discriminator(_form)
+]
+SharingEntry = Annotated[
+    Annotated[Literal["uniform", "equal"], Tag("word")] | Annotated[FractionEntry, Tag("table")], Discriminator(_form)
+]
+ThirdBody = Annotated[
+    Annotated[Literal["self", "any"], Tag("word")] | Annotated[dict[str, Number], Tag("table")], Discriminator(_form)
+]
+
+
+class ProcessEntry(_Entry):
+    """One [[process]]: give energy_eV, cross_section_m2 and beyond, or power_law, or ramp."""
+
+    id: str = Field(description="short name, unique in the set")
+    kind: Literal["elastic", "excitation", "ionization", "attachment"] = Field(description="what happens")
+    threshold_eV: Number = Field(description="energy loss, eV; for attachment only the onset")
+    label: str = Field(description="what the process is, in words")
+    source: str = Field(description="citation")
+    energy_eV: list[Number] | None = Field(None, description="energies of the table, strictly rising, eV")
+    cross_section_m2: list[Number] | None = Field(None, description="cross sections of the table, m2")
+    beyond: Beyond | None = Field(None, description="what follows the last point of the table")
+    power_law: PowerLawEntry | None = Field(None, description="formula in place of a table")
+    ramp: RampEntry | None = Field(None, description="formula in place of a table")
+    scattering: Literal["isotropic"] | None = Field(None, description="angular law; only isotropic is available")
+    sharing: SharingEntry | None = Field(None, description="energy sharing of an ionization; default uniform")
+    degeneracy_lower: Number | None = Field(None, description="statistical weight of the lower level")
+    degeneracy_upper: Number | None = Field(None, description="statistical weight of the upper level")
+    lower: str | None = Field(None, description="id of the excitation to the lower level; default the ground state")
+    third_body: ThirdBody | None = Field(None, description="three-body attachment; cross section then in m5")
+    passive: bool = Field(False, description="averaged over the swarm without acting on it")
+    relative_uncertainty: Number | None = Field(None, description="one standard deviation of the cross section")
+
+
+class SetEntry(_Entry):
+    """A set of electron-impact cross sections of one gas."""
+
+    name: str = Field(description="name of the set; in gases/ also that of its file")
+    formula: str = Field(description="of the atom or molecule, as CO2")
+    molar_mass_g_per_mol: Number = Field(description="molar mass, g/mol")
+    elastic_is: Literal["momentum_transfer", "total_momentum_transfer", "integral"] = Field(
+        description="what the elastic cross section contains"
+    )
+    source: str = Field(description="citation")
+    rights: str = Field(description="who may use the numbers, and how")
+    note: str = Field(description="caveats")
+    trusted_E_over_N_Td: Annotated[list[Number], Field(min_length=2, max_length=2)] | None = Field(
+        None, description="lowest and highest field for which the set is recommended, Td"
+    )
+    table_temperature_K: Number | None = Field(None, description="gas temperature that the set stands for, K")
+    process: list[ProcessEntry] = Field(description="the processes, sorted by threshold")
+
+
+def set_file_schema() -> dict[str, Any]:
+    """JSON Schema of a set file, for editors."""
+    return SetEntry.model_json_schema()
