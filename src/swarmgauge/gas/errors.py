@@ -20,8 +20,20 @@ class MixtureError(InputError):
     """A mixture is not a possible one."""
 
 
-def suggestion(given: str, known: Iterable[str]) -> str:
-    """A question with the nearest of the `known` names, with a space before it, or nothing where none is near."""
+def nearest(given: str, known: Iterable[str]) -> str:
+    """The nearest of the `known` names, or nothing where none is near."""
     by_lower = {name.lower(): name for name in known}
     near = get_close_matches(given.lower(), by_lower, n=1, cutoff=0.5)
-    return f" Did you mean {by_lower[near[0]]}?" if near else ""
+    return by_lower[near[0]] if near else ""
+
+
+def suggestion(given: str, known: Iterable[str]) -> str:
+    """A question with the nearest of the `known` names, with a space before it, or nothing where none is near."""
+    near = nearest(given, known)
+    return f" Did you mean {near}?" if near else ""
+
+
+def printable(text: str) -> str:
+    """Text for one line of a message: control signs and line ends escaped, cut where long."""
+    text = text if text.isprintable() else repr(text)[1:-1]
+    return text if len(text) <= 60 else text[:57] + "..."

@@ -4,7 +4,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag
 
-Number = Annotated[float, Field(allow_inf_nan=True)]  # laws and processes say better what is wrong with nan and inf
+Number = float  # nan and inf pass here: laws and processes say better what is wrong with them
 
 
 def _form(value: Any) -> str:
@@ -62,15 +62,23 @@ class ProcessEntry(_Entry):
     source: str = Field(description="citation")
     energy_eV: list[Number] | None = Field(None, description="energies of the table, strictly rising, eV")
     cross_section_m2: list[Number] | None = Field(None, description="cross sections of the table, m2")
-    beyond: Beyond | None = Field(None, description="what follows the last point of the table")
+    beyond: Beyond | None = Field(
+        None, description="what follows the last point of the table", examples=["zero", "hold", {"power": -0.9}]
+    )
     power_law: PowerLawEntry | None = Field(None, description="formula in place of a table")
     ramp: RampEntry | None = Field(None, description="formula in place of a table")
     scattering: Literal["isotropic"] | None = Field(None, description="angular law; only isotropic is available")
-    sharing: SharingEntry | None = Field(None, description="energy sharing of an ionization; default uniform")
+    sharing: SharingEntry | None = Field(
+        None, description="energy sharing of an ionization; default uniform", examples=["equal", {"fraction": 0.3}]
+    )
     degeneracy_lower: Number | None = Field(None, description="statistical weight of the lower level")
     degeneracy_upper: Number | None = Field(None, description="statistical weight of the upper level")
     lower: str | None = Field(None, description="id of the excitation to the lower level; default the ground state")
-    third_body: ThirdBody | None = Field(None, description="three-body attachment; cross section then in m5")
+    third_body: ThirdBody | None = Field(
+        None,
+        description="three-body attachment; cross section then in m5",
+        examples=["self", "any", {"O2": 1.0, "N2": 0.02}],
+    )
     passive: bool = Field(False, description="averaged over the swarm without acting on it")
     relative_uncertainty: Number | None = Field(None, description="one standard deviation of the cross section")
 

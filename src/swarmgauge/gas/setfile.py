@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 from pydantic import ValidationError
 
-from .errors import InputError, SetFileError
+from .errors import InputError, SetFileError, printable
 from .faults import form_faults, joined
 from .gas import Gas
 from .laws import Law, PowerLaw, Ramp, Table
@@ -37,11 +37,11 @@ def gas_from_content(content: dict[str, Any], place: str) -> Gas:
         lines = form_faults(error, content, lambda path: _place(path, content), SetEntry)
         raise SetFileError(joined(lines, f"{place}, ")) from error
     faults, processes = [], []
-    for process in entry.process:
+    for number, process in enumerate(entry.process):
         try:
             processes.append(_process(process))
         except InputError as error:
-            faults.append(f"process {process.id}, {error}")
+            faults.append(f"{_place(('process', number), content)}, {error}")
     if faults:
         raise SetFileError(joined(faults, f"{place}, "))
     try:
@@ -106,9 +106,9 @@ def _place(path: tuple, content: dict[str, Any]) -> str:
     if len(path) >= 2 and path[0] == "process":
         process = content["process"][path[1]]
         name = process.get("id") if isinstance(process, dict) else None
-        named = name if isinstance(name, str) and name else f"number {path[1] + 1}"
+        named = printable(name) if isinstance(name, str) and name else f"number {path[1] + 1}"
         return ", ".join([f"process {named}", *(str(step) for step in path[2:])])
-    return ", ".join(str(step) for step in path if isinstance(step, str))
+    return ", ".join(printable(step) for step in path if isinstance(step, str))
 
 
 def _pair(values: list[float] | None) -> tuple[float, float] | None:
@@ -141,7 +141,7 @@ def _law(entry: ProcessEntry) -> Law:
     table = {name for name in ("energy_eV", "cross_section_m2", "beyond") if getattr(entry, name) is not None}
     ways = [name for name in ("power_law", "ramp") if getattr(entry, name) is not None]
     if table:
-        ways.insert(0, " with ".join(sorted(table)))
+        ways.insert(0, " with ".join(name for name in ("energy_eV", "cross_section_m2", "beyond") if name in table))
     if len(ways) != 1:
         found = f"more than one cross section is given ({', '.join(ways)})" if ways else "no cross section is given"
         raise SetFileError(f"{found}. Give either energy_eV, cross_section_m2 and beyond, or power_law, or ramp.")
