@@ -9,7 +9,7 @@ class InputError(ValueError):
 
 
 class ProcessError(InputError):
-    """A cross section or a process is not a possible one."""
+    """A cross section, a process or a set of them is not a possible one."""
 
 
 class SetFileError(InputError):

@@ -2,7 +2,6 @@
 
 import math
 from collections.abc import Iterable, Mapping
-from types import MappingProxyType
 from typing import Any
 
 import numpy as np
@@ -14,6 +13,7 @@ from .library import load_named_or_path
 from .process import Process
 
 _SUM_TOLERANCE = 1e-6
+_DENSEST = 1e30  # 1/m3; a hundred times that of a solid
 
 
 class Mixture:
@@ -37,7 +37,7 @@ class Mixture:
 
     def __init__(
         self,
-        fractions: Mapping[str | Gas, float],
+        fractions: Mapping[str, float] | Mapping[Gas, float] | Mapping[str | Gas, float],
         temperature_K: float = 0.0,
         pressure_Pa: float | None = None,
         leave_out: Iterable[str] = (),
@@ -50,12 +50,10 @@ class Mixture:
         self.pressure_Pa = _checked_pressure(pressure_Pa, self.temperature_K)
         self.leave_out = tuple(sorted(set([leave_out] if isinstance(leave_out, str) else leave_out)))
         _check_left_out(self.leave_out, self.gases)
-        self._acting = MappingProxyType(
-            {
-                gas.name: tuple(p for p in gas.processes if f"{gas.name}/{p.id}" not in self.leave_out)
-                for gas in self.gases
-            }
-        )
+        self._acting = {
+            gas.name: tuple(p for p in gas.processes if f"{gas.name}/{p.id}" not in self.leave_out)
+            for gas in self.gases
+        }
         self._check_elastic()
         self._check_third_bodies()
 
@@ -175,6 +173,11 @@ def _checked_pressure(value: Any, temperature: float) -> float | None:
         raise MixtureError(
             f"pressure_Pa = {pressure:g} at temperature_K = 0: a cold gas has no pressure. "
             "Give a temperature, or leave the pressure out."
+        )
+    if pressure > _DENSEST * BOLTZMANN * temperature:
+        raise MixtureError(
+            f"pressure_Pa = {pressure:g} at temperature_K = {temperature:g} is no gas: N = p/kT exceeds {_DENSEST:g} 1/m3. "
+            "Correct one of them."
         )
     return pressure
 
