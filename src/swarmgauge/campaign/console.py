@@ -1,0 +1,104 @@
+"""What a run prints: 80 columns of plain text, its table and what to do about each missed target."""
+
+import textwrap
+from collections.abc import Iterator, Sequence
+from itertools import groupby, pairwise
+
+from swarmgauge.gas import Mixture
+from swarmgauge.swarm import Point
+
+from .number import compact, format_bound, format_estimate
+from .trust import outside
+
+WIDTH = 80
+MOST_ROWS = 20
+MOST_BLOCKS = 10
+_HEAD = (
+    "    E/N     energy     W flux     W bulk      D_T N      D_L N   nu_net/N   err/",
+    "     Td         eV        m/s        m/s    1/(m s)    1/(m s)      m^3/s target",
+)
+_NOTE = "D_T N and D_L N are flux values; bulk values stand in coefficients.csv."
+_EDGES = (7, 18, 29, 40, 51, 62, 73, 80)  # where the columns of the head end
+_WIDEST = {
+    "mean_energy": 9,
+    "drift_velocity_flux": 10,
+    "drift_velocity_bulk": 10,
+    "diffusion_T_times_N_flux": 10,
+    "diffusion_L_times_N_flux": 10,
+    "net_frequency_over_N": 12,
+}
+
+
+def table(points: Sequence[Point]) -> Iterator[str]:
+    """Lines of the table that a run prints: one block per mixture, temperature and pressure."""
+    blocks = [list(block) for _, block in groupby(points, key=lambda point: id(point.conditions.mixture))]
+    for block in blocks[:MOST_BLOCKS]:
+        yield from wrapped(f"{describe(block[0].conditions.mixture)}:")
+        yield from _HEAD
+        yield from _rows(block[:MOST_ROWS])
+        if len(block) > MOST_ROWS:
+            yield f"    and {len(block) - MOST_ROWS} more fields in coefficients.csv"
+    if len(blocks) > MOST_BLOCKS:
+        yield f"and {len(blocks) - MOST_BLOCKS} more mixtures in coefficients.csv"
+    if blocks:
+        yield _NOTE
+
+
+def describe(mixture: Mixture) -> str:
+    """A mixture with its temperature and pressure."""
+    pressure = "" if mixture.pressure_Pa is None else f", {compact(f'{mixture.pressure_Pa:.6g}')} Pa"
+    return f"{mixture.describe()} at {mixture.temperature_K:g} K{pressure}"
+
+
+def wrapped(text: str, indent: str = "    ") -> list[str]:
+    """Lines of at most 80 columns; long words such as paths stay whole."""
+    return textwrap.wrap(text, WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
+
+
+def _rows(points: Sequence[Point]) -> Iterator[str]:
+    """Rows under the head. A column moves left as far as one to its right needs room."""
+    cells = [_cells(point) for point in points]
+    widths = [max(map(len, column)) for column in zip(*cells, strict=True)]
+    edges = list(_EDGES)
+    for right, left in pairwise(reversed(range(len(edges)))):
+        edges[left] = min(edges[left], edges[right] - widths[right] - 1)
+    for row in cells:
+        line = ""
+        for cell, edge in zip(row, edges, strict=True):
+            line += cell.rjust(edge - len(line))
+        yield line
+
+
+def _cells(point: Point) -> list[str]:
+    conditions = point.conditions
+    mark = "~" if outside(conditions.mixture, conditions.field) else ""
+    return [mark + field_text(point), *(_cell(point, name) for name in _WIDEST), _judgement(point)]
+
+
+def field_text(point: Point) -> str:
+    """The reduced field of a point in at most six characters."""
+    field = point.conditions.field.E_over_N_Td
+    return next(text for digits in (5, 4, 3, 2, 1) if len(text := compact(f"{field:.{digits}g}")) <= 6)
+
+
+def _cell(point: Point, name: str) -> str:
+    estimate = point.estimates.get(name)
+    if estimate is None:
+        return "-"
+    if estimate.upper_bound == estimate.upper_bound:  # not NaN: never seen
+        return format_bound(estimate.upper_bound)
+    return format_estimate(estimate.value, estimate.standard_error, _WIDEST[name])
+
+
+def _judgement(point: Point) -> str:
+    """Worst error over its target, with ! where it is missed; what ended the swarm where nothing is judged."""
+    missed = "!" if missed_target(point) else ""
+    _, excess = point.worst
+    if not excess < 1000:
+        return f">999{missed}"
+    return f"{excess:.2f}{missed}" if excess < 10 else f"{excess:.0f}{missed}"
+
+
+def missed_target(point: Point) -> bool:
+    """Whether a target of a point was missed, or the point has no steady state to judge."""
+    return point.status != "done"

@@ -1,0 +1,121 @@
+"""What a run says in words, before and after its table."""
+
+import math
+from collections.abc import Iterable, Iterator, Sequence
+from pathlib import Path
+
+from swarmgauge.gas import Mixture
+from swarmgauge.swarm import Point
+from swarmgauge.swarm.targets import Target
+
+from .campaign import Outcome
+from .console import field_text, missed_target, table, wrapped
+from .runfile import RunFile
+from .trust import outside
+
+MOST_REMEDIES = 8
+MOST_WARNINGS = 12
+
+
+def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -> Iterator[str]:
+    """The folder, which targets hold, the limits, and which third bodies act."""
+    targets = ", ".join(f"{target.pattern} {target}{_reach(target)}" for target in run_file.targets)
+    yield from wrapped(f"{folder}: standard errors asked for: {targets}")
+    limit = max_minutes or run_file.max_minutes
+    whole = f", {limit:g} min in all" if limit else ""
+    count = len(run_file.points)
+    yield from wrapped(
+        f"{run_file.title or run_file.name}: {count} point{'s' if count > 1 else ''}, seed {run_file.seed}, "
+        f"at most {run_file.max_minutes_per_point:g} min a point{whole}"
+    )
+    for line in dict.fromkeys(line for point in run_file.points for line in _third_bodies(point.mixture)):
+        yield from wrapped(line)
+
+
+def closing(run_file: RunFile, outcome: Outcome) -> Iterator[str]:
+    """The table, what was missed, what to beware of, how to go on, and the folder."""
+    points = list(outcome.points.values())
+    yield from table(points)
+    yield from remedies(points, run_file.max_minutes_per_point)
+    yield from warnings(points)
+    for text in outcome.set_aside:
+        yield from wrapped(f"~ {text}; set aside as *.damaged and computed anew")
+    if outcome.interrupted:
+        yield from wrapped(
+            f"interrupted: {len(points)} of {outcome.asked} points are finished and kept. "
+            "Give the same command again to go on from here."
+        )
+    reused = f", {outcome.reused} of them from before" if outcome.reused else ""
+    figures = "" if outcome.interrupted else ", figures/"
+    yield from wrapped(
+        f"{len(points)} points{reused}, {_duration(outcome.wall_seconds)}. Written: coefficients.csv, "
+        f"distributions.csv, provenance.json{figures}"
+    )
+    yield f"{outcome.folder}"
+
+
+def remedies(points: Sequence[Point], max_minutes: float) -> Iterator[str]:
+    """A line for each point that missed a target: what is lacking and what would help.
+
+    max_minutes : wall clock that a point may take, as the run file says.
+    """
+    missed = [point for point in points if missed_target(point)]
+    for point in missed[:MOST_REMEDIES]:
+        yield from wrapped(f"! {field_text(point)} Td: {_remedy(point, max_minutes)}")
+    if len(missed) > MOST_REMEDIES:
+        yield f"! and {len(missed) - MOST_REMEDIES} more points (column `reached` in coefficients.csv)"
+
+
+def warnings(points: Sequence[Point]) -> Iterator[str]:
+    """Each warning once, with the fields that it holds for."""
+    fields: dict[str, list[str]] = {}
+    for point in points:
+        conditions = point.conditions
+        for text in (*point.warnings, *outside(conditions.mixture, conditions.field)):
+            fields.setdefault(text, []).append(field_text(point))
+    found = list(fields.items())
+    for text, where in found[:MOST_WARNINGS]:
+        yield from wrapped(f"~ {_range(where)} Td: {text}")
+    if len(found) > MOST_WARNINGS:
+        yield f"~ and {len(found) - MOST_WARNINGS} more warnings in provenance.json"
+
+
+def _reach(target: Target) -> str:
+    if target.from_Td == 0.0 and math.isinf(target.to_Td):
+        return ""
+    if math.isinf(target.to_Td):
+        return f" from {target.from_Td:g} Td"
+    return f" from {target.from_Td:g} to {target.to_Td:g} Td"
+
+
+def _third_bodies(mixture: Mixture) -> Iterator[str]:
+    for gas in mixture.gases:
+        for process in mixture.acting(gas):
+            if process.third_body is not None:
+                bodies = mixture.third_bodies(gas, process)
+                named = ", ".join(f"{name} (x {efficiency:g})" for name, efficiency in bodies.items()) or "none"
+                yield f"{gas.name}/{process.id}: third bodies that act: {named}"
+
+
+def _remedy(point: Point, max_minutes: float) -> str:
+    if point.status not in ("target missed", "interrupted"):
+        return f"{point.status}: no steady swarm, so no target can be met."
+    name, excess = point.worst
+    status = point.targets.get(name)
+    asked = f" of {status.target}" if status is not None else ""
+    if not math.isfinite(excess):
+        return f'{name} was never seen. Raise max_minutes_per_point, or give its target an "abs".'
+    minutes = max(point.wall_seconds / 60.0, max_minutes) * excess**2
+    return (
+        f"{name} has {excess:.2g} times the error{asked} asked for after {point.wall_seconds / 60.0:.2g} min. "
+        f"Raise max_minutes_per_point to about {math.ceil(1.2 * minutes)}, or ask for less."
+    )
+
+
+def _range(fields: Iterable[str]) -> str:
+    fields = list(fields)
+    return fields[0] if len(fields) == 1 else f"{fields[0]} to {fields[-1]}" if len(fields) > 3 else ", ".join(fields)
+
+
+def _duration(seconds: float) -> str:
+    return f"{seconds:.0f} s" if seconds < 120 else f"{seconds / 60:.0f} min"
