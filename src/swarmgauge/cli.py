@@ -1,0 +1,148 @@
+"""The command line: what each command takes, and which package does it. Heavy parts are loaded on use."""
+
+import argparse
+import json
+import os
+import sys
+from collections.abc import Iterable, Sequence
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from . import __version__
+from .gas.errors import InputError
+
+if TYPE_CHECKING:
+    from .campaign import RunFile
+
+DONE, FAILED, BAD_INPUT, MISSED, INTERRUPTED = 0, 1, 2, 3, 130
+
+
+def build_parser() -> argparse.ArgumentParser:
+    """The parser of all commands; `command.run` is the function that does it."""
+    parser = argparse.ArgumentParser(
+        prog="swarmgauge",
+        description="Electron swarms in gases: coefficients, distributions and their errors from cross sections.",
+        epilog="Exit status: 0 done, 1 failed, 2 bad input, 3 finished but a target was missed, 130 interrupted.",
+    )
+    parser.add_argument("--version", action="version", version=f"swarmgauge {__version__}")
+    commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True)
+
+    sets = commands.add_parser("sets", help="list the cross-section sets that come with the program")
+    sets.add_argument("--json", action="store_true", help="print JSON")
+    sets.set_defaults(run=run_sets)
+
+    run = commands.add_parser("run", help="compute all points of a run file")
+    run.add_argument("runfile", metavar="RUNFILE", help="path of a run file, or the name of a shipped one")
+    run.add_argument("--out", metavar="DIR", type=Path, help="results folder (default: beside the run file)")
+    run.add_argument("--workers", metavar="N", type=_count, help="threads (default: the cores this process may use)")
+    run.add_argument("--max-minutes", metavar="M", type=_minutes, help="wall clock for the whole campaign")
+    run.add_argument("--dry-run", action="store_true", help="list the points and stop; nothing is written")
+    run.add_argument("--quiet", action="store_true", help="print nothing but faults")
+    run.add_argument("--json", action="store_true", help="print JSON instead of the table")
+    run.set_defaults(run=run_run)
+    return parser
+
+
+def run_sets(arguments: argparse.Namespace) -> int:
+    """List the shipped sets."""
+    from .campaign.listing import sets_json, sets_table
+
+    _print([json.dumps(sets_json(), indent=1)] if arguments.json else sets_table())
+    return DONE
+
+
+def run_run(arguments: argparse.Namespace) -> int:
+    """Run a campaign, or list its points."""
+    from .campaign import load_run_file
+    from .campaign.listing import points_json, points_table
+    from .campaign.locate import locate
+
+    path, folder = locate(arguments.runfile)
+    run_file = load_run_file(path)
+    folder = arguments.out or folder
+    if not arguments.dry_run:
+        return _compute(run_file, folder, arguments)
+    if not arguments.quiet:
+        _print(
+            [json.dumps(points_json(run_file, folder), indent=1)] if arguments.json else points_table(run_file, folder)
+        )
+    return DONE
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Do what the arguments say (those of the process where None); return the exit status."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="replace")  # a title may hold letters that the terminal lacks
+    arguments = build_parser().parse_args(argv)
+    try:
+        return arguments.run(arguments)
+    except InputError as error:
+        return _fail(str(error), BAD_INPUT)
+    except KeyboardInterrupt:
+        return _fail("interrupted before anything was computed", INTERRUPTED)
+    except BrokenPipeError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())  # or closing it would fail once more
+        return FAILED
+    except OSError as error:
+        where = f"{error.filename}: " if error.filename else ""
+        return _fail(f"{where}{error.strerror or error}. Points already finished are kept.", FAILED)
+    except MemoryError:
+        return _fail("out of memory. Use fewer --workers, or split the run file.", FAILED)
+
+
+def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:
+    from .campaign import run_campaign
+    from .campaign.listing import outcome_json
+    from .campaign.messages import closing, opening
+    from .campaign.progress import Bars
+
+    shown = not (arguments.quiet or arguments.json)
+    if shown:
+        _print(opening(run_file, folder, arguments.max_minutes))
+    with Bars(shown) as bars:
+        outcome = run_campaign(
+            run_file,
+            folder,
+            workers=arguments.workers,
+            max_minutes=arguments.max_minutes,
+            on_start=bars.start,
+            on_progress=bars.progress,
+            on_finished=bars.finished,
+        )
+    if outcome.points and not outcome.interrupted:
+        from .report import draw_figures
+
+        draw_figures(outcome.folder)
+    if shown:
+        _print(closing(run_file, outcome))
+    elif arguments.json:
+        _print([json.dumps(outcome_json(outcome), indent=1)])
+    if outcome.interrupted:
+        return INTERRUPTED
+    return MISSED if outcome.missed else DONE
+
+
+def _print(lines: Iterable[str]) -> None:
+    for line in lines:
+        print(line, flush=True)
+
+
+def _fail(message: str, status: int) -> int:
+    for line in message.splitlines():
+        print(f"swarmgauge: {line}", file=sys.stderr)
+    return status
+
+
+def _count(text: str) -> int:
+    number = int(text)
+    if number < 1:
+        raise ValueError
+    return number
+
+
+def _minutes(text: str) -> float:
+    number = float(text)
+    if not 0.0 < number < float("inf"):
+        raise ValueError
+    return number
