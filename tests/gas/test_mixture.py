@@ -109,7 +109,7 @@ IMPOSSIBLE = [
     (lambda: Mixture({gas(): 1.0}, temperature_K="300"), "temperature_K = '300' is not a number"),
     (lambda: Mixture({gas(): 1.0}, 300.0, pressure_Pa=0.0), "pressure_Pa = 0 is not possible. Give"),
     (lambda: Mixture({gas(): 1.0}, 0.0, pressure_Pa=1e5), "a cold gas has no pressure. Give a temperature, or leave"),
-    (lambda: Mixture({gas(): 1.0}, 5e-324, pressure_Pa=1e5), "is no gas: N = p/kT exceeds .* Correct one"),
+    (lambda: Mixture({gas(): 1.0}, 5e-324, pressure_Pa=1e5), "is no gas: N = p/kT > .* Correct one"),
     (lambda: Mixture({gas(): 1.0}, leave_out=["a/elastik"]), '"a/elastik" is not a process .* Did you mean a/elastic?'),
     (
         lambda: Mixture({gas(): 1.0}, leave_out=["a/elastic"]),

@@ -176,7 +176,7 @@ def _checked_pressure(value: Any, temperature: float) -> float | None:
         )
     if pressure > _DENSEST * BOLTZMANN * temperature:
         raise MixtureError(
-            f"pressure_Pa = {pressure:g} at temperature_K = {temperature:g} is no gas: N = p/kT exceeds {_DENSEST:g} 1/m3. "
+            f"pressure_Pa = {pressure:g} at temperature_K = {temperature:g} is no gas: N = p/kT > {_DENSEST:g} 1/m3. "
             "Correct one of them."
         )
     return pressure
