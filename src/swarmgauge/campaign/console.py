@@ -56,12 +56,13 @@ def wrapped(text: str, indent: str = "    ") -> list[str]:
 
 
 def _rows(points: Sequence[Point]) -> Iterator[str]:
-    """Rows under the head. A column moves left as far as one to its right needs room."""
+    """Rows under the head. A column moves aside as far as its neighbours need room."""
     cells = [_cells(point) for point in points]
     widths = [max(map(len, column)) for column in zip(*cells, strict=True)]
     edges = list(_EDGES)
     for right, left in pairwise(reversed(range(len(edges)))):
         edges[left] = min(edges[left], edges[right] - widths[right] - 1)
+    edges = [max(edge, sum(widths[: place + 1]) + place) for place, edge in enumerate(edges)]
     for row in cells:
         line = ""
         for cell, edge in zip(row, edges, strict=True):

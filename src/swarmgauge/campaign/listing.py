@@ -1,104 +1,22 @@
-"""Lists for the command line: sets, points and outcomes, as text or for JSON."""
+"""The shipped sets as a list, as text or for JSON."""
 
-import math
 from collections.abc import Iterator
-from itertools import groupby
-from pathlib import Path
 from typing import Any
 
 from swarmgauge.gas import Gas, load_named, shipped_sets
-from swarmgauge.swarm import Estimate, point_key
-
-from .campaign import Outcome
-from .console import describe, wrapped
-from .results import short
-from .runfile import Conditions, RunFile
-from .store import ResultsFolder
 
 
 def sets_table() -> Iterator[str]:
     """One line per shipped set, under a head."""
-    yield f"{'set':<27}{'formula':<8}{'elastic_is':<25}{'processes':>9}  {'trusted Td':<9}"
+    yield f"{'set':<27}{'formula':<8}{'elastic_is':<24}{'processes':>9}  {'trusted Td':<9}"
     for name in shipped_sets():
         gas = load_named(name)
-        yield f"{name:<27}{gas.formula:<8}{gas.elastic_is:<25}{len(gas.processes):>9}  {_trusted(gas):<9}".rstrip()
+        yield f"{name:<27}{gas.formula:<8}{gas.elastic_is:<24}{len(gas.processes):>9}  {_trusted(gas):<9}".rstrip()
 
 
 def sets_json() -> list[dict[str, Any]]:
     """The shipped sets, with their sources."""
     return [_set_json(load_named(name)) for name in shipped_sets()]
-
-
-def points_table(run_file: RunFile, folder: Path) -> Iterator[str]:
-    """The points of a run file, and which of them the folder holds."""
-    store = ResultsFolder(folder)
-    yield from wrapped(f"{folder}: {len(run_file.points)} points; nothing is computed or written now")
-    for _, block in groupby(run_file.points, key=lambda point: id(point.mixture)):
-        points = list(block)
-        yield from wrapped(f"{describe(points[0].mixture)}:")
-        for point in points:
-            key = _key(point, run_file.seed)
-            kept = "there" if store.has(key) else "to do"
-            yield f"    {short(key)}  {point.field.E_over_N_Td:>10g} Td  {kept}"
-
-
-def points_json(run_file: RunFile, folder: Path) -> list[dict[str, Any]]:
-    """The points of a run file, and which of them the folder holds."""
-    store = ResultsFolder(folder)
-    keys = [_key(point, run_file.seed) for point in run_file.points]
-    return [
-        {"point": key, **_conditions(point), "there": store.has(key)}
-        for key, point in zip(keys, run_file.points, strict=True)
-    ]
-
-
-def outcome_json(outcome: Outcome) -> dict[str, Any]:
-    """A campaign's outcome with all its estimates; null where a number is none."""
-    return {
-        "folder": str(outcome.folder),
-        "interrupted": outcome.interrupted,
-        "asked": outcome.asked,
-        "reused": outcome.reused,
-        "set_aside": list(outcome.set_aside),
-        "wall_seconds": round(outcome.wall_seconds, 3),
-        "points": [
-            {
-                "point": key,
-                **_conditions(point.conditions),
-                "status": point.status,
-                "warnings": list(point.warnings),
-                "estimates": {name: _estimate(estimate) for name, estimate in point.estimates.items()},
-            }
-            for key, point in outcome.points.items()
-        ],
-    }
-
-
-def _key(point: Conditions, seed: int) -> str:
-    return point_key(point.mixture, point.field, seed)
-
-
-def _conditions(point: Any) -> dict[str, Any]:
-    mixture = point.mixture
-    return {
-        "mixture": mixture.describe(),
-        "temperature_K": mixture.temperature_K,
-        "pressure_Pa": mixture.pressure_Pa,
-        "E_over_N_Td": point.field.E_over_N_Td,
-    }
-
-
-def _estimate(estimate: Estimate) -> dict[str, Any]:
-    return {
-        "value": _or_none(estimate.value),
-        "standard_error": _or_none(estimate.standard_error),
-        "unit": estimate.unit,
-        "upper_bound": _or_none(estimate.upper_bound),
-    }
-
-
-def _or_none(number: float) -> float | None:
-    return float(number) if math.isfinite(number) else None
 
 
 def _set_json(gas: Gas) -> dict[str, Any]:
