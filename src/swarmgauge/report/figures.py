@@ -47,6 +47,8 @@ def _title(groups: list[Group]) -> str:
 
 def _save(figure: Figure, path: Path) -> list[Path]:
     """Write a figure in both forms, without date or version inside."""
+    figure.draw_without_rendering()  # lays the panels out, which takes a second
+    figure.set_layout_engine("none")  # and need not be done again for the second form
     saved = []
     for form, metadata in (("png", {"Software": None}), ("svg", {"Date": None, "Creator": None})):
         content = io.BytesIO()

@@ -2,9 +2,9 @@
 
 from typing import Any
 
-# Order: each colour is lighter than the one before it, so that a grey print keeps them apart. The hues are those that
+# Each colour is lighter than the one before it, so that a grey print keeps them apart. The hues follow those that
 # M. Okabe and K. Ito (Color Universal Design, 2008) found distinguishable with any kind of colour vision.
-COLOURS = ("#000000", "#0072B2", "#D55E00", "#CC79A7", "#E69F00")
+COLOURS = ("#000000", "#0072B2", "#D55E00", "#CC79A7", "#F0B030")
 MARKERS = ("o", "s", "^", "D", "v")
 DASHES: tuple[Any, ...] = ("-", (0, (5, 2)), (0, (1.5, 1.5)), (0, (6, 2, 1.5, 2)), (0, (9, 3)))
 SEQUENCE = "cividis"
