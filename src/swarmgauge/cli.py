@@ -54,8 +54,8 @@ def run_sets(arguments: argparse.Namespace) -> int:
 def run_run(arguments: argparse.Namespace) -> int:
     """Run a campaign, or list its points."""
     from .campaign import load_run_file
-    from .campaign.listing import points_json, points_table
     from .campaign.locate import locate
+    from .campaign.summary import points_json, points_table
 
     path, folder = locate(arguments.runfile)
     run_file = load_run_file(path)
@@ -93,9 +93,9 @@ def main(argv: Sequence[str] | None = None) -> int:
 
 def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:
     from .campaign import run_campaign
-    from .campaign.listing import outcome_json
     from .campaign.messages import closing, opening
     from .campaign.progress import Bars
+    from .campaign.summary import outcome_json
 
     shown = not (arguments.quiet or arguments.json)
     if shown:
