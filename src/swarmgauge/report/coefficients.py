@@ -7,7 +7,7 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
-from matplotlib.ticker import LogLocator
+from matplotlib.ticker import LogFormatterSciNotation, LogLocator, NullFormatter
 
 from .groups import Group
 from .style import COLOURS, DASHES, GREY, MARKERS, WIDTH_INCHES
@@ -41,6 +41,7 @@ PANELS = (
     ),
     Panel(r"net frequency $(\nu_i-\nu_a)/N$ (m$^3$/s)", {"net_frequency_over_N": ""}),
 )
+_PLAIN = (1e-3, 1e4)  # numbers in between are labelled without a power of ten
 _DECADES_AROUND_ZERO = 4  # a signed axis is linear below this part of its largest value
 
 
@@ -108,10 +109,22 @@ def _scale(axes: Axes, curves: Sequence[np.ndarray]) -> None:
     if values.size == 0:
         return
     if values.min() > 0.0:
-        axes.set_yscale("log")
-        margin = (values.max() / values.min()) ** 0.06 * 1.05
-        axes.set_ylim(values.min() / margin, values.max() * margin)
+        _scale_log(axes, values.min(), values.max())
     else:
         largest = np.abs(values).max()
         axes.set_yscale("symlog", linthresh=10.0 ** (np.floor(np.log10(largest)) - _DECADES_AROUND_ZERO + 1))
         axes.axhline(0.0, color=GREY, linewidth=0.6)
+
+
+def _scale_log(axes: Axes, low: float, high: float) -> None:
+    """A logarithmic axis that the values fill, labelled within its decades where there are few."""
+    axes.set_yscale("log")
+    margin = (high / low) ** 0.06 * 1.05
+    axes.set_ylim(low / margin, high * margin)
+    if high / low < 100.0:
+        axes.yaxis.set_major_locator(LogLocator(subs=(1.0, 2.0, 5.0)))
+        axes.yaxis.set_minor_formatter(NullFormatter())
+        if low > _PLAIN[0] and high < _PLAIN[1]:
+            axes.yaxis.set_major_formatter("{x:g}")
+        else:
+            axes.yaxis.set_major_formatter(LogFormatterSciNotation(minor_thresholds=(np.inf, np.inf)))

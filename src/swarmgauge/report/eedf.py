@@ -27,7 +27,8 @@ def eedf_figure(results: Results, groups: Sequence[Group], note: str) -> Figure:
     figure = Figure(figsize=(WIDTH_INCHES, 1.0 + 3.4 * rows), layout="constrained")
     for axes, group in zip(figure.subplots(rows, columns, squeeze=False).flat, groups, strict=False):
         _draw(axes, results, group)
-        axes.set_title(textwrap.fill(group.label, 100 // columns))
+        if len(groups) > 1:
+            axes.set_title(textwrap.fill(group.label, 100 // columns))
     for axes in figure.axes[len(groups) :]:
         axes.remove()
     figure.suptitle(note, x=0.01, ha="left", fontsize=8, color=GREY)
