@@ -8,24 +8,11 @@ from typing import NamedTuple
 import numpy as np
 from numba import config, njit
 
-from .bits import load, store
+from .bits import load, prefer_wide_vectors, store
 from .collide import collide, retire, swap_electrons
 from .flight import fly
 from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, score_window_end
-from .lanes import (
-    ELECTRON_FIELDS,
-    FLIGHT_CODES,
-    FLIGHT_NUMBERS,
-    LANE_SUMS,
-    LEFT,
-    SUM_ENERGY,
-    SUM_TIME,
-    SUM_Z,
-    WEIGHT,
-    X,
-    Y,
-    Z,
-)
+from .lanes import ELECTRON_FIELDS, LEFT, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, WEIGHT, X, Y, Z
 from .lookup import ATTACHMENT, IONIZATION, LAB_CELLS, SPEED_CELLS
 from .record import list_ended, list_rare, record
 from .streams import next_word, one_to_two
@@ -41,18 +28,12 @@ SERIES_COLUMNS = 5
 class Workspace(NamedTuple):
     """All arrays of one cohort that change; see `lanes`, `record` and `history` for the layouts."""
 
-    streams: np.ndarray  # (4 * lanes,) uint64, for the flights
-    spare_streams: np.ndarray  # (4 * lanes,) uint64, for work of variable length
-    electrons: np.ndarray  # (ELECTRON_FIELDS * lanes,)
-    other_electrons: np.ndarray  # the same, target of the comb
+    rows: np.ndarray  # (ROWS * lanes,)
+    combed: np.ndarray  # (ELECTRON_FIELDS * lanes,), target of the comb
     history: np.ndarray  # (lanes * 3 * lags,)
     other_history: np.ndarray  # the same, target of the next window
-    sums: np.ndarray  # (LANE_SUMS * lanes,)
-    numbers: np.ndarray  # (FLIGHT_NUMBERS * lanes,)
-    codes: np.ndarray  # (FLIGHT_CODES * lanes,) int64
-    words: np.ndarray  # (lanes,) uint64
-    rare: np.ndarray  # (lanes,) int64
-    ended: np.ndarray  # (lanes,) int64
+    rare: np.ndarray  # (lanes + 1,) int64
+    ended: np.ndarray  # (lanes + 1,) int64
     histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
     lab_histogram: np.ndarray  # (LAB_CELLS * 2,)
     lag_sums: np.ndarray  # (LAG_SUMS * lags,)
@@ -64,16 +45,10 @@ class Workspace(NamedTuple):
 def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspace:
     """Zeroed arrays of a cohort with `lanes` lanes."""
     return Workspace(
-        streams=np.zeros(4 * lanes, dtype=np.uint64),
-        spare_streams=np.zeros(4 * lanes, dtype=np.uint64),
-        electrons=np.zeros(ELECTRON_FIELDS * lanes),
-        other_electrons=np.zeros(ELECTRON_FIELDS * lanes),
+        rows=np.zeros(ROWS * lanes),
+        combed=np.zeros(ELECTRON_FIELDS * lanes),
         history=np.zeros(lanes * 3 * lags),
         other_history=np.zeros(lanes * 3 * lags),
-        sums=np.zeros(LANE_SUMS * lanes),
-        numbers=np.zeros(FLIGHT_NUMBERS * lanes),
-        codes=np.zeros(FLIGHT_CODES * lanes, dtype=np.int64),
-        words=np.zeros(lanes, dtype=np.uint64),
         rare=np.zeros(lanes + 1, dtype=np.int64),
         ended=np.zeros(lanes + 1, dtype=np.int64),
         histogram=np.zeros(gases * SPEED_CELLS * 2),
@@ -86,7 +61,7 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
 
 
 @njit(forceinline=True)
-def comb(alive, size, electrons, target, spare_streams, lanes):
+def comb(alive, size, rows, combed, lanes):
     """Systematic resampling of `alive` weighted electrons to `size` electrons of weight 1, in lane order.
 
     Teeth at (j + u) W / size, u one random number and W the total weight: every electron is taken weight x size / W
@@ -94,95 +69,98 @@ def comb(alive, size, electrons, target, spare_streams, lanes):
     """
     total = 0.0
     for lane in range(alive):
-        total += load(electrons, lane + WEIGHT * lanes)
+        total += load(rows, lane + WEIGHT * lanes)
     spacing = total / size
-    tooth = (one_to_two(next_word(spare_streams, 0, lanes)) - 1.0) * spacing
+    tooth = (one_to_two(next_word(rows, 0, lanes)) - 1.0) * spacing
     lane = 0
-    upper = load(electrons, WEIGHT * lanes)
+    upper = load(rows, WEIGHT * lanes)
     for j in range(size):
         while upper <= tooth and lane < alive - 1:
             lane += 1
-            upper += load(electrons, lane + WEIGHT * lanes)
+            upper += load(rows, lane + WEIGHT * lanes)
         for field in range(ELECTRON_FIELDS):
-            store(target, j + field * lanes, load(electrons, lane + field * lanes))
-        store(target, j + X * lanes, 0.0)
-        store(target, j + Y * lanes, 0.0)
-        store(target, j + Z * lanes, 0.0)
-        store(target, j + WEIGHT * lanes, 1.0)
+            store(combed, j + field * lanes, load(rows, lane + field * lanes))
+        store(combed, j + X * lanes, 0.0)
+        store(combed, j + Y * lanes, 0.0)
+        store(combed, j + Z * lanes, 0.0)
+        store(combed, j + WEIGHT * lanes, 1.0)
         tooth += spacing
+    for field in range(ELECTRON_FIELDS):
+        for j in range(size):
+            store(rows, j + field * lanes, load(combed, j + field * lanes))
 
 
 @njit(forceinline=True)
-def add_lane_sums(sums, lanes, series, window):
+def add_lane_sums(rows, lanes, series, window):
     """Move the lane sums of a window, in lane order, into row `window` of the series."""
     time, energy, z = 0.0, 0.0, 0.0
     for lane in range(lanes):
-        time += sums[lane + SUM_TIME * lanes]
-        energy += sums[lane + SUM_ENERGY * lanes]
-        z += sums[lane + SUM_Z * lanes]
-    sums[:] = 0.0
+        time += load(rows, lane + SUM_TIME * lanes)
+        energy += load(rows, lane + SUM_ENERGY * lanes)
+        z += load(rows, lane + SUM_Z * lanes)
+        store(rows, lane + SUM_TIME * lanes, 0.0)
+        store(rows, lane + SUM_ENERGY * lanes, 0.0)
+        store(rows, lane + SUM_Z * lanes, 0.0)
     series[window, SERIES_TIME] = time
     series[window, SERIES_ENERGY] = energy
     series[window, SERIES_Z] = z
 
 
 @njit(forceinline=True)
-def rare_pass(active, alive, tables, electrons, history, work, window_time, measuring, lanes, lags):
+def rare_pass(active, alive, tables, history, work, window_time, measuring, lanes, lags):
     """All non-elastic events of one step. Returns the number of electrons alive, or -1 if no lane is spare.
 
     A child starts its path at its birth, an attached electron ends its own: the flux sums are settled here.
     """
-    for at in range(list_rare(active, work.codes, work.rare, lanes)):
+    rows = work.rows
+    for at in range(list_rare(active, rows, work.rare, lanes)):
         if alive >= lanes:
             return -1
         lane = work.rare[at]
-        elapsed = window_time - load(electrons, lane + LEFT * lanes)
-        process = collide(
-            lane, alive, tables, electrons, work.numbers, work.codes, work.words, work.spare_streams, lanes
-        )
+        elapsed = window_time - load(rows, lane + LEFT * lanes)
+        process = collide(lane, alive, tables, rows, lanes)
         if process < 0:
             continue
         if measuring:
             work.events[process] += 1
         kind = tables.kind[process]
         if kind == IONIZATION:
-            score_path(alive, -1.0, elapsed, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
+            score_path(alive, -1.0, elapsed, rows, history, work.lag_sums, work.point_sums, lanes, lags)
             alive += 1
         elif kind == ATTACHMENT:
-            score_path(lane, 1.0, elapsed, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
+            score_path(lane, 1.0, elapsed, rows, history, work.lag_sums, work.point_sums, lanes, lags)
     return alive
 
 
-@njit(forceinline=True)
-def step(active, alive, tables, electrons, history, work, window_time, field, measuring, lanes, lags, gases, thermal):
+@njit(inline="always")
+def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
-    fly(
-        active, tables, field, work.streams, electrons, work.sums, work.numbers, work.codes, work.words,
-        lanes, gases, thermal,
-    )  # fmt: skip
+    rows = work.rows
+    fly(active, tables, field, rows, lanes, gases, thermal)
     if measuring:
-        record(active, work.numbers, work.codes, work.histogram, work.lab_histogram, work.counts, lanes)
+        record(active, rows, work.histogram, work.lab_histogram, work.counts, lanes)
     born_from = alive
-    alive = rare_pass(active, alive, tables, electrons, history, work, window_time, measuring, lanes, lags)
-    ended = list_ended(active, electrons, work.ended, lanes)
+    alive = rare_pass(active, alive, tables, history, work, window_time, measuring, lanes, lags)
+    ended = list_ended(active, rows, work.ended, lanes)
     for child in range(born_from, alive):
-        swap_electrons(electrons, child, active, lanes)
+        swap_electrons(rows, child, active, lanes)
         active += 1
     if alive < 0:
         return active, alive
-    return retire(work.ended, ended, active, alive, electrons, lanes)
+    return retire(work.ended, ended, active, alive, rows, lanes)
 
 
 @njit(forceinline=True)
-def end_window(alive, tables, electrons, history, extended, work, window_time, lanes, lags):
+def end_window(alive, tables, history, extended, work, window_time, lanes, lags):
     """Settle all paths, lengthen the histories and take the sums over the population at the end of a window."""
+    rows = work.rows
     for lane in range(alive):
-        score_path(lane, 1.0, window_time, electrons, history, work.lag_sums, work.point_sums, lanes, lags)
-        extend_history(lane, electrons, history, extended, lanes, lags)
-        score_window_end(lane, tables, electrons, extended, work.lag_sums, work.point_sums, lanes, lags)
+        score_path(lane, 1.0, window_time, rows, history, work.lag_sums, work.point_sums, lanes, lags)
+        extend_history(lane, rows, history, extended, lanes, lags)
+        score_window_end(lane, tables, rows, extended, work.lag_sums, work.point_sums, lanes, lags)
 
 
-@njit(forceinline=True)
+@njit(inline="always")
 def windows(tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal):
     """Run as many windows as `series` has rows; returns the status.
 
@@ -190,32 +168,30 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
     size : electrons at the start of every window; lags : windows in a displacement history; window_time and field in
     kernel units; measuring : whether histograms and counts are taken (the path and lag sums always are); max_steps :
     bound on the steps of one window; lanes, gases, thermal : compile-time constants.
-    The target arrays of `work` hold the electrons and histories at the end where the number of windows is odd.
+    After an odd number of windows the histories stand in `work.other_history`.
     """
-    electrons, target = work.electrons, work.other_electrons
     history, extended = work.history, work.other_history
     for window in range(series.shape[0]):
         for lane in range(size):
-            store(electrons, lane + LEFT * lanes, window_time)
+            store(work.rows, lane + LEFT * lanes, window_time)
         active, alive, steps = size, size, 0
         path_before = work.point_sums[PATH]
         while active > 0:
             active, alive = step(
-                active, alive, tables, electrons, history, work, window_time, field, measuring, lanes, lags, gases, thermal
+                active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal
             )
             steps += 1
             if alive < 0:
                 return FULL
             if steps > max_steps:
                 return STUCK
-        end_window(alive, tables, electrons, history, extended, work, window_time, lanes, lags)
-        add_lane_sums(work.sums, lanes, series, window)
+        end_window(alive, tables, history, extended, work, window_time, lanes, lags)
+        add_lane_sums(work.rows, lanes, series, window)
         series[window, SERIES_PATH] = work.point_sums[PATH] - path_before
         series[window, SERIES_ALIVE] = alive
         if alive == 0:
             return EXTINCT
-        comb(alive, size, electrons, target, work.spare_streams, lanes)
-        electrons, target = target, electrons
+        comb(alive, size, work.rows, work.combed, lanes)
         history, extended = extended, history
     return RUNNING
 
@@ -240,6 +216,7 @@ def compiled_windows(lanes: int, gases: int, thermal: bool):
 
     def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
         digest  # noqa: B018 - part of the cache key
+        prefer_wide_vectors()
         return windows(
             tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal
         )

@@ -8,38 +8,13 @@ import math
 
 from numba import njit
 
-from .bits import load, load_table, store
+from .bits import load, load_table, store, store_int
 from .functions import log, sincos_turn
-from .lanes import (
-    CUT,
-    ELASTIC,
-    FRACTION,
-    GAS_CELL,
-    INVERSE_M,
-    INVERSE_M_GAS,
-    LAB_CELL,
-    LEFT,
-    NULL,
-    OUTCOME,
-    RARE,
-    REMAINDER,
-    SUM_ENERGY,
-    SUM_TIME,
-    SUM_Z,
-    UX,
-    UY,
-    UZ,
-    VX,
-    VY,
-    VZ,
-    VZ_BEFORE,
-    WEIGHT,
-    X,
-    Y,
-    Z,
-)
+from .lanes import CUT, ELASTIC, FRACTION, GAS_CELL, INVERSE_M, INVERSE_M_GAS, LAB_CELL, LEFT, NULL, NX, NY
+from .lanes import NZ, OUTCOME, RARE, REMAINDER, STREAM, SUM_ENERGY, SUM_TIME, SUM_Z, UX, UY, UZ, VX, VY, VZ, VZ_BEFORE
+from .lanes import WEIGHT, X, Y, Z
 from .lookup import ENERGY_CELLS, LAB_COARSER, SPEED_CELLS, energy_cell, speed_cell
-from .streams import advance_state, lower_one_to_two, one_to_two, upper_one_to_two
+from .streams import advance_state, load_state, lower_one_to_two, one_to_two, store_state, upper_one_to_two
 
 
 @njit(forceinline=True)
@@ -73,8 +48,8 @@ def normal_pair(word):
     return radius * cosine, radius * sine
 
 
-@njit(forceinline=True)
-def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, lanes, gases, thermal):
+@njit(inline="always")
+def fly(active, tables, field, rows, lanes, gases, thermal):
     """Fly every active lane to its next event and scatter it if that is an elastic collision.
 
     A flight ends at the first of: a candidate event at rate M (the majorant over the speeds reachable within the
@@ -83,16 +58,12 @@ def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, 
     At a candidate event a gas is picked by its share of M, a neutral is drawn from its Maxwellian, and the event is
     real with probability nu(g)/M_gas, g the relative speed. Other than elastic events are left to the rare pass.
 
-    active : number of lanes to move; field : acceleration along z; the rest as in `lanes` and `lookup`.
-    words : (lanes,) uint64; the random word of the direction, for the rare pass.
-    electrons, streams, sums, numbers, codes, words : changed in place. lanes, gases, thermal : compile-time constants.
+    active : number of lanes to move; field : acceleration along z; rows : (ROWS * lanes,), changed in place, see
+    `lanes`; lanes, gases, thermal : compile-time constants.
     """
     for i in range(active):
         # Random words: a fixed number for every flight, whatever comes of it.
-        s0 = load(streams, i)
-        s1 = load(streams, i + lanes)
-        s2 = load(streams, i + 2 * lanes)
-        s3 = load(streams, i + 3 * lanes)
+        s0, s1, s2, s3 = load_state(rows, i + STREAM * lanes, lanes)
         word_time, s0, s1, s2, s3 = advance_state(s0, s1, s2, s3)
         word_event, s0, s1, s2, s3 = advance_state(s0, s1, s2, s3)
         word_direction, s0, s1, s2, s3 = advance_state(s0, s1, s2, s3)
@@ -102,17 +73,14 @@ def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, 
             word_z, s0, s1, s2, s3 = advance_state(s0, s1, s2, s3)
             ux, uy = normal_pair(word_xy)
             uz, _ = normal_pair(word_z)
-        store(streams, i, s0)
-        store(streams, i + lanes, s1)
-        store(streams, i + 2 * lanes, s2)
-        store(streams, i + 3 * lanes, s3)
+        store_state(rows, i + STREAM * lanes, lanes, s0, s1, s2, s3)
 
         # Length of the flight.
-        vx = load(electrons, i + VX * lanes)
-        vy = load(electrons, i + VY * lanes)
-        vz = load(electrons, i + VZ * lanes)
-        left = load(electrons, i + LEFT * lanes)
-        weight = load(electrons, i + WEIGHT * lanes)
+        vx = load(rows, i + VX * lanes)
+        vy = load(rows, i + VY * lanes)
+        vz = load(rows, i + VZ * lanes)
+        left = load(rows, i + LEFT * lanes)
+        weight = load(rows, i + WEIGHT * lanes)
         across = vx * vx + vy * vy
         energy = across + vz * vz
         start = energy_cell(energy)
@@ -125,23 +93,23 @@ def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, 
 
         # Motion with constant acceleration, and its exact integrals.
         gain = field * time
-        z = load(electrons, i + Z * lanes)
+        z = load(rows, i + Z * lanes)
         weighted_time = weight * time
-        store(sums, i + SUM_TIME * lanes, load(sums, i + SUM_TIME * lanes) + weighted_time)
+        store(rows, i + SUM_TIME * lanes, load(rows, i + SUM_TIME * lanes) + weighted_time)
         store(
-            sums,
+            rows,
             i + SUM_ENERGY * lanes,
-            load(sums, i + SUM_ENERGY * lanes) + weighted_time * (energy + gain * (vz + gain * (1.0 / 3.0))),
+            load(rows, i + SUM_ENERGY * lanes) + weighted_time * (energy + gain * (vz + gain * (1.0 / 3.0))),
         )
         store(
-            sums,
+            rows,
             i + SUM_Z * lanes,
-            load(sums, i + SUM_Z * lanes) + weighted_time * (z + time * (0.5 * vz + gain * (1.0 / 6.0))),
+            load(rows, i + SUM_Z * lanes) + weighted_time * (z + time * (0.5 * vz + gain * (1.0 / 6.0))),
         )
-        store(electrons, i + X * lanes, load(electrons, i + X * lanes) + vx * time)
-        store(electrons, i + Y * lanes, load(electrons, i + Y * lanes) + vy * time)
-        store(electrons, i + Z * lanes, z + time * (vz + 0.5 * gain))
-        store(electrons, i + LEFT * lanes, left - time)
+        store(rows, i + X * lanes, load(rows, i + X * lanes) + vx * time)
+        store(rows, i + Y * lanes, load(rows, i + Y * lanes) + vy * time)
+        store(rows, i + Z * lanes, z + time * (vz + 0.5 * gain))
+        store(rows, i + LEFT * lanes, left - time)
         vz = vz + gain
         speed = math.sqrt(across + vz * vz)
 
@@ -169,9 +137,9 @@ def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, 
             gz = vz - uz
             relative = math.sqrt(gx * gx + gy * gy + gz * gz)
             cell, fraction = speed_cell(relative)
-            store(numbers, i + UX * lanes, ux)
-            store(numbers, i + UY * lanes, uy)
-            store(numbers, i + UZ * lanes, uz)
+            store(rows, i + UX * lanes, ux)
+            store(rows, i + UY * lanes, uy)
+            store(rows, i + UZ * lanes, uz)
 
         # Elastic, something else, or null?
         cell = cell + gas * SPEED_CELLS
@@ -185,23 +153,25 @@ def fly(active, tables, field, streams, electrons, sums, numbers, codes, words, 
         outcome = NULL if reached else CUT
         outcome = RARE if is_real else outcome
         outcome = ELASTIC if is_elastic else outcome
-        store(codes, i + GAS_CELL * lanes, cell)
-        store(codes, i + LAB_CELL * lanes, lab_cell >> LAB_COARSER)
-        store(codes, i + OUTCOME * lanes, outcome)
-        store(numbers, i + FRACTION * lanes, fraction)
-        store(numbers, i + REMAINDER * lanes, remainder)
-        store(numbers, i + INVERSE_M * lanes, weight * inverse_majorant if reached else 0.0)
+        store_int(rows, i + GAS_CELL * lanes, cell)
+        store_int(rows, i + LAB_CELL * lanes, lab_cell >> LAB_COARSER)
+        store_int(rows, i + OUTCOME * lanes, outcome)
+        store(rows, i + FRACTION * lanes, fraction)
+        store(rows, i + REMAINDER * lanes, remainder)
+        store(rows, i + INVERSE_M * lanes, weight * inverse_majorant if reached else 0.0)
         inverse_gas = inverse_majorant if gases == 1 else 1.0 / (above - below)
-        store(numbers, i + INVERSE_M_GAS * lanes, weight * inverse_gas if reached else 0.0)
-        store(numbers, i + VZ_BEFORE * lanes, vz)
+        store(rows, i + INVERSE_M_GAS * lanes, weight * inverse_gas if reached else 0.0)
+        store(rows, i + VZ_BEFORE * lanes, vz)
 
         # Elastic collision.
-        store(words, i, word_direction)
         nx, ny, nz = isotropic_direction(word_direction)
+        store(rows, i + NX * lanes, nx)
+        store(rows, i + NY * lanes, ny)
+        store(rows, i + NZ * lanes, nz)
         after_x, after_y, after_z = scattered(
             vx, vy, vz, ux, uy, uz, relative, nx, ny, nz,
             load_table(tables.electron_part, gas), load_table(tables.neutral_part, gas),
         )  # fmt: skip
-        store(electrons, i + VX * lanes, after_x if is_elastic else vx)
-        store(electrons, i + VY * lanes, after_y if is_elastic else vy)
-        store(electrons, i + VZ * lanes, after_z if is_elastic else vz)
+        store(rows, i + VX * lanes, after_x if is_elastic else vx)
+        store(rows, i + VY * lanes, after_y if is_elastic else vy)
+        store(rows, i + VZ * lanes, after_z if is_elastic else vz)

@@ -35,19 +35,19 @@ POINT_SUMS = 5
 
 
 @njit(forceinline=True)
-def score_path(lane, sign, elapsed, electrons, history, lag_sums, point_sums, lanes, lags):
+def score_path(lane, sign, elapsed, rows, history, lag_sums, point_sums, lanes, lags):
     """Add (sign +1, end of a path) or take away (-1, birth) the flux sums of the electron in `lane`.
 
     elapsed : time since the start of the window. history : (lanes, 3, lags), flat; cumulated displacements.
     """
-    weight = sign * load(electrons, lane + WEIGHT * lanes)
-    x = load(electrons, lane + X * lanes)
-    y = load(electrons, lane + Y * lanes)
-    z = load(electrons, lane + Z * lanes)
+    weight = sign * load(rows, lane + WEIGHT * lanes)
+    x = load(rows, lane + X * lanes)
+    y = load(rows, lane + Y * lanes)
+    z = load(rows, lane + Z * lanes)
     point_sums[PATH] += weight * z
     point_sums[PATH_SQUARED] += 0.5 * weight * z * z
     point_sums[PATH_ACROSS_SQUARED] += 0.5 * weight * (x * x + y * y)
-    row = 3 * lags * int(load(electrons, lane + SLOT * lanes))
+    row = 3 * lags * int(load(rows, lane + SLOT * lanes))
     for k in range(lags):
         past_z = load(history, row + 2 * lags + k)
         past_across = load(history, row + k) * x + load(history, row + lags + k) * y
@@ -60,25 +60,25 @@ def score_path(lane, sign, elapsed, electrons, history, lag_sums, point_sums, la
 
 
 @njit(forceinline=True)
-def extend_history(lane, electrons, history, extended, lanes, lags):
+def extend_history(lane, rows, history, extended, lanes, lags):
     """Write the history of the electron in `lane`, longer by the window that ends, to row `lane` of `extended`."""
-    row = 3 * lags * int(load(electrons, lane + SLOT * lanes))
+    row = 3 * lags * int(load(rows, lane + SLOT * lanes))
     new = 3 * lags * lane
     for axis in range(3):
-        way = load(electrons, lane + (X + axis) * lanes)
+        way = load(rows, lane + (X + axis) * lanes)
         store(extended, new + axis * lags, way)
         for k in range(1, lags):
             store(extended, new + axis * lags + k, load(history, row + axis * lags + k - 1) + way)
-    store(electrons, lane + SLOT * lanes, float(lane))
+    store(rows, lane + SLOT * lanes, float(lane))
 
 
 @njit(forceinline=True)
-def score_window_end(lane, tables, electrons, extended, lag_sums, point_sums, lanes, lags):
+def score_window_end(lane, tables, rows, extended, lag_sums, point_sums, lanes, lags):
     """Add the R sums of the electron in `lane`, whose history has just been extended."""
-    weight = load(electrons, lane + WEIGHT * lanes)
-    vx = load(electrons, lane + VX * lanes)
-    vy = load(electrons, lane + VY * lanes)
-    vz = load(electrons, lane + VZ * lanes)
+    weight = load(rows, lane + WEIGHT * lanes)
+    vx = load(rows, lane + VX * lanes)
+    vy = load(rows, lane + VY * lanes)
+    vz = load(rows, lane + VZ * lanes)
     cell, fraction = speed_cell((vx * vx + vy * vy + vz * vz) ** 0.5)
     low = load_table(tables.net_frequency, 2 * cell)
     rate = low + fraction * (load_table(tables.net_frequency, 2 * cell + 1) - low)

@@ -1,33 +1,41 @@
-"""Names of the rows of the lane arrays. Row f of lane i is at index f * lanes + i (`lanes` is a compile-time constant).
+"""Rows of the lane array. Row f of lane i is at index f * lanes + i; `lanes` is a compile-time constant.
 
-Electron fields are copied when an electron is copied or moved; lane sums and random streams never are.
+Electron fields are copied when an electron is copied or moved between lanes; sums and random streams never are.
 """
 
-# Electron fields (float64)
+# Electron fields
 VX, VY, VZ = 0, 1, 2  # velocity
 X, Y, Z = 3, 4, 5  # displacement since the start of the window
 LEFT = 6  # time left until the end of the window; negative marks an electron that was attached
 WEIGHT = 7
-SLOT = 8  # row of the displacement history (an integer)
+SLOT = 8  # row of the displacement history (a whole number)
 ELECTRON_FIELDS = 9
 
-# Lane sums (float64): integrals over the flights of a lane, times the weight
-SUM_TIME, SUM_ENERGY, SUM_Z = 0, 1, 2  # of 1, w^2 and z
-LANE_SUMS = 3
+# Lane sums: integrals over the flights of a lane, times the weight, of 1, w^2 and z
+SUM_TIME, SUM_ENERGY, SUM_Z = 9, 10, 11
 
-# What the flight pass tells the later passes of the same step (float64)
-FRACTION = 0  # position in the speed cell, 0 to 1
-INVERSE_M = 1  # weight / majorant of the mixture; 0 for a flight that was cut
-INVERSE_M_GAS = 2  # weight / majorant of the gas
-REMAINDER = 3  # what selects the process: uniform in the gas's majorant, less its elastic frequency
-UX, UY, UZ = 4, 5, 6  # velocity of the neutral
-VZ_BEFORE = 7  # v_z at the end of the flight, before the collision
-FLIGHT_NUMBERS = 8
+# Random streams, four words each: for the flights, and for work of variable length
+STREAM, SPARE_STREAM = 12, 16
 
-# The same (int64)
-GAS_CELL = 0  # gas * SPEED_CELLS + cell of the relative speed
-LAB_CELL = 1  # cell of the electron's own speed, for the energy distribution
-OUTCOME = 2
-FLIGHT_CODES = 3
+# What the flight pass tells the later passes of the same step
+FRACTION = 20  # position in the speed cell, 0 to 1
+INVERSE_M = 21  # weight / majorant of the mixture; 0 for a flight that was cut
+INVERSE_M_GAS = 22  # weight / majorant of the gas; likewise
+REMAINDER = 23  # what selects the process: uniform in the gas's majorant, less its elastic frequency
+UX, UY, UZ = 24, 25, 26  # velocity of the neutral
+VZ_BEFORE = 27  # v_z at the end of the flight, before the collision
+GAS_CELL = 28  # integer: gas * SPEED_CELLS + cell of the relative speed
+LAB_CELL = 29  # integer: cell of the electron's own speed, for the energy distribution
+OUTCOME = 30  # integer: CUT, NULL, ELASTIC or RARE
+NX, NY, NZ = 31, 32, 33  # direction after the collision
+ROWS = 34
 
-CUT, NULL, ELASTIC, RARE = 0, 1, 2, 3  # values of OUTCOME
+CUT, NULL, ELASTIC, RARE = 0, 1, 2, 3
+
+
+def lane_count(electrons: int) -> int:
+    """Lanes for a cohort of `electrons`: half as many to spare, and rows 64 bytes off a multiple of 4096.
+
+    Rows a multiple of 4096 bytes apart would all fall into one set of the first-level cache.
+    """
+    return -(-electrons * 3 // 2 // 512) * 512 + 8

@@ -8,7 +8,7 @@ of M. A candidate of one gas (probability M_gas / M) counts with 1 / M_gas towar
 
 from numba import njit
 
-from .bits import load, store
+from .bits import load, load_int, store
 from .lanes import (
     FRACTION,
     GAS_CELL,
@@ -23,7 +23,7 @@ from .lanes import (
 
 
 @njit(forceinline=True)
-def record(active, numbers, codes, histogram, lab_histogram, counts, lanes):
+def record(active, rows, histogram, lab_histogram, counts, lanes):
     """Score the candidates of one step.
 
     histogram : (G * SPEED_CELLS, 2), flat; sums of weight / M_gas and of position in the cell x weight / M_gas.
@@ -31,34 +31,34 @@ def record(active, numbers, codes, histogram, lab_histogram, counts, lanes):
     counts : (4,) int64; flights by outcome. All three are changed in place.
     """
     for i in range(active):
-        counts[load(codes, i + OUTCOME * lanes)] += 1
-        inverse_gas = load(numbers, i + INVERSE_M_GAS * lanes)
-        inverse = load(numbers, i + INVERSE_M * lanes)
-        cell = 2 * load(codes, i + GAS_CELL * lanes)
+        counts[load_int(rows, i + OUTCOME * lanes)] += 1
+        inverse_gas = load(rows, i + INVERSE_M_GAS * lanes)
+        inverse = load(rows, i + INVERSE_M * lanes)
+        cell = 2 * load_int(rows, i + GAS_CELL * lanes)
         store(histogram, cell, load(histogram, cell) + inverse_gas)
-        at = load(histogram, cell + 1) + inverse_gas * load(numbers, i + FRACTION * lanes)
+        at = load(histogram, cell + 1) + inverse_gas * load(rows, i + FRACTION * lanes)
         store(histogram, cell + 1, at)
-        cell = 2 * load(codes, i + LAB_CELL * lanes)
+        cell = 2 * load_int(rows, i + LAB_CELL * lanes)
         store(lab_histogram, cell, load(lab_histogram, cell) + inverse)
-        at = load(lab_histogram, cell + 1) + inverse * load(numbers, i + VZ_BEFORE * lanes)
+        at = load(lab_histogram, cell + 1) + inverse * load(rows, i + VZ_BEFORE * lanes)
         store(lab_histogram, cell + 1, at)
 
 
 @njit(forceinline=True)
-def list_rare(active, codes, rare, lanes):
+def list_rare(active, rows, rare, lanes):
     """Fill `rare` with the lanes that wait for a rare event, in rising order; return their number."""
     count = 0
     for i in range(active):
         store(rare, count, i)
-        count += 1 if load(codes, i + OUTCOME * lanes) == RARE else 0
+        count += 1 if load_int(rows, i + OUTCOME * lanes) == RARE else 0
     return count
 
 
 @njit(forceinline=True)
-def list_ended(active, electrons, ended, lanes):
+def list_ended(active, rows, ended, lanes):
     """Fill `ended` with the lanes whose electron reached the window's end or was attached; return their number."""
     count = 0
     for i in range(active):
         store(ended, count, i)
-        count += 1 if load(electrons, i + LEFT * lanes) <= 0.0 else 0
+        count += 1 if load(rows, i + LEFT * lanes) <= 0.0 else 0
     return count

@@ -12,8 +12,9 @@ import hashlib
 import numpy as np
 from numba import njit
 
-from .bits import double_of, load, store
+from .bits import double_of, load_word, store_word
 from .functions import ONE_BITS
+from .lanes import SPARE_STREAM
 
 _GOLDEN = np.uint64(0x9E3779B97F4A7C15)
 _U12 = np.uint64(12)
@@ -42,9 +43,9 @@ def cohort_start(seed: int, stream_key: str, cohort: int) -> int:
     return int.from_bytes(hashlib.sha256(text).digest()[:8], "little")
 
 
-def seeded_streams(start: int, lanes: int) -> np.ndarray:
-    """States of `lanes` streams; shape (4 * lanes,), uint64, word j of lane L at j * lanes + L."""
-    return np.ascontiguousarray(splitmix_words(start, 4 * lanes).reshape(lanes, 4).T).ravel()
+def seeded_streams(start: int, count: int) -> np.ndarray:
+    """States of `count` streams; shape (4, count), uint64; stream L has words 4L .. 4L+3 of the sequence."""
+    return splitmix_words(start, 4 * count).reshape(count, 4).T
 
 
 @njit(forceinline=True)
@@ -63,15 +64,32 @@ def advance_state(s0, s1, s2, s3):
 
 
 @njit(forceinline=True)
-def next_word(streams, lane, lanes):
-    """The next 64 bits of one lane's stream, which moves on; for work outside the vector loop."""
-    output, s0, s1, s2, s3 = advance_state(
-        load(streams, lane), load(streams, lane + lanes), load(streams, lane + 2 * lanes), load(streams, lane + 3 * lanes)
+def load_state(rows, at, lanes):
+    """The four state words of the stream whose first word is at index `at`."""
+    return (
+        load_word(rows, at),
+        load_word(rows, at + lanes),
+        load_word(rows, at + 2 * lanes),
+        load_word(rows, at + 3 * lanes),
     )
-    store(streams, lane, s0)
-    store(streams, lane + lanes, s1)
-    store(streams, lane + 2 * lanes, s2)
-    store(streams, lane + 3 * lanes, s3)
+
+
+@njit(forceinline=True)
+def store_state(rows, at, lanes, s0, s1, s2, s3):
+    """Write the state words back."""
+    store_word(rows, at, s0)
+    store_word(rows, at + lanes, s1)
+    store_word(rows, at + 2 * lanes, s2)
+    store_word(rows, at + 3 * lanes, s3)
+
+
+@njit(forceinline=True)
+def next_word(rows, lane, lanes):
+    """The next 64 bits of a lane's spare stream, which moves on; for work outside the vector loop."""
+    at = lane + SPARE_STREAM * lanes
+    s0, s1, s2, s3 = load_state(rows, at, lanes)
+    output, s0, s1, s2, s3 = advance_state(s0, s1, s2, s3)
+    store_state(rows, at, lanes, s0, s1, s2, s3)
     return output
 
 

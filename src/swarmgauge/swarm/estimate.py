@@ -1,0 +1,63 @@
+"""A value with its standard error, and the jackknife that gives it."""
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+
+@dataclass(frozen=True)
+class Estimate:
+    """A computed quantity.
+
+    value, standard_error, unit : the estimate; the error is NaN where a process was never seen (value 0) and 0 where the
+        value is exact.
+    samples : independent cohorts behind it.
+    upper_bound : 95 % upper bound, only where a process was never seen; otherwise NaN.
+    """
+
+    value: float
+    standard_error: float
+    unit: str
+    samples: int
+    upper_bound: float = math.nan
+
+    def __repr__(self) -> str:
+        if not math.isnan(self.upper_bound):
+            return f"< {self.upper_bound:.2g} {self.unit} (95 %)".rstrip()
+        return f"{with_error(self.value, self.standard_error)} {self.unit}".rstrip()
+
+
+def with_error(value: float, error: float) -> str:
+    """`value` with its error in brackets, in units of the last digit shown: 1.042(3)e5.
+
+    One error digit, two where the first is a 1. Without a usable error (NaN, infinite, zero) four digits are shown.
+    """
+    if not math.isfinite(value):
+        return "nan"
+    if not math.isfinite(error) or error <= 0.0:
+        return f"{value:.4g}"
+    exponent = math.floor(math.log10(max(abs(value), error)))
+    place = math.floor(math.log10(error))
+    if error / 10.0**place < 1.95:
+        place -= 1
+    digits = round(error / 10.0**place)
+    decimals = max(exponent - place, 0)
+    text = f"{value / 10.0**exponent:.{decimals}f}({digits})"
+    return text if exponent == 0 else f"{text}e{exponent}"
+
+
+def jackknife(function, sums: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Values and standard errors of `function` of the mean of independent rows, by leaving out one row at a time.
+
+    function : maps (rows, columns) to (rows, quantities), each row for itself; sums : (cohorts, columns).
+    The value is function(mean of all), never a mean of ratios. Errors: B. Efron, The Jackknife, the Bootstrap and Other
+    Resampling Plans, SIAM 1982, eq. 3.4. Column sums are exact (math.fsum), so that their order does not matter.
+    """
+    count = len(sums)
+    total = np.array([math.fsum(column) for column in sums.T.tolist()])
+    value = function((total / count)[None, :])[0]
+    without = function((total - sums) / (count - 1))
+    centre = np.array([math.fsum(column) for column in without.T.tolist()]) / count
+    squares = np.array([math.fsum(column) for column in ((without - centre) ** 2).T.tolist()])
+    return value, np.sqrt((count - 1) / count * squares)
