@@ -72,6 +72,7 @@ def test_a_second_run_computes_nothing(campaign_of):
     second = campaign_of()
     assert WORK["cohorts"] == 0
     assert (first.reused, second.reused) == (0, 3)
+    assert repr(second) == f"Outcome({second.folder}: 3 of 3 points, 3 from before; done)"
     assert {path.name: path.read_bytes() for path in point_files(second)} == before
     assert (second.folder / "coefficients.csv").read_bytes() == table
 

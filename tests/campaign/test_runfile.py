@@ -45,6 +45,7 @@ def test_a_run_file_gives_its_points(write):
     assert (mixture.temperature_K, mixture.pressure_Pa) == (293.15, 101325)
     assert run_file.max_minutes_per_point == 5
     assert run_file.max_minutes is None
+    assert repr(run_file) == "RunFile(case: a test; 3 points, seed 7)"
 
 
 def test_what_is_left_out_has_the_pinned_defaults(write):

@@ -41,6 +41,10 @@ class Outcome:
         """Whether a point missed a target or has no steady state."""
         return any(point.status != "done" for point in self.points.values())
 
+    def __repr__(self) -> str:
+        state = "interrupted" if self.interrupted else "targets missed" if self.missed else "done"
+        return f"Outcome({self.folder}: {len(self.points)} of {self.asked} points, {self.reused} from before; {state})"
+
 
 def usable_cores() -> int:
     """The cores that this process may use."""

@@ -59,6 +59,9 @@ class RunFile:
         """Name of the campaign: that of the file without its ending."""
         return self.path.stem
 
+    def __repr__(self) -> str:
+        return f"RunFile({self.name}: {self.title or 'no title'}; {len(self.points)} points, seed {self.seed})"
+
 
 def load_run_file(path: str | Path) -> RunFile:
     """Read a run file, the sets it names and the points it asks for.
