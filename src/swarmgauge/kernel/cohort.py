@@ -36,6 +36,7 @@ class Workspace(NamedTuple):
     ended: np.ndarray  # (lanes + 1,) int64
     histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
     lab_histogram: np.ndarray  # (LAB_CELLS * 2,)
+    recoil: np.ndarray  # (G,)
     lag_sums: np.ndarray  # (LAG_SUMS * lags,)
     point_sums: np.ndarray  # (POINT_SUMS,)
     counts: np.ndarray  # (4,) int64; flights by outcome
@@ -53,6 +54,7 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
         ended=np.zeros(lanes + 1, dtype=np.int64),
         histogram=np.zeros(gases * SPEED_CELLS * 2),
         lab_histogram=np.zeros(LAB_CELLS * 2),
+        recoil=np.zeros(gases),
         lag_sums=np.zeros(LAG_SUMS * lags),
         point_sums=np.zeros(POINT_SUMS),
         counts=np.zeros(4, dtype=np.int64),
@@ -138,7 +140,7 @@ def step(active, alive, tables, history, work, window_time, field, measuring, la
     rows = work.rows
     fly(active, tables, field, rows, lanes, gases, thermal)
     if measuring:
-        record(active, rows, work.histogram, work.lab_histogram, work.counts, lanes)
+        record(active, rows, work.histogram, work.lab_histogram, work.recoil, work.counts, lanes, thermal)
     born_from = alive
     alive = rare_pass(active, alive, tables, history, work, window_time, measuring, lanes, lags)
     ended = list_ended(active, rows, work.ended, lanes)

@@ -11,7 +11,7 @@ from numba import njit
 from .bits import load, load_table, store, store_int
 from .functions import log, sincos_turn
 from .lanes import CUT, ELASTIC, FRACTION, GAS_CELL, INVERSE_M, INVERSE_M_GAS, LAB_CELL, LEFT, NULL, NX, NY
-from .lanes import NZ, OUTCOME, RARE, REMAINDER, STREAM, SUM_ENERGY, SUM_TIME, SUM_Z, UX, UY, UZ, VX, VY, VZ, VZ_BEFORE
+from .lanes import NZ, OUTCOME, RARE, RECOIL, REMAINDER, STREAM, SUM_ENERGY, SUM_TIME, SUM_Z, UX, UY, UZ, VX, VY, VZ, VZ_BEFORE
 from .lanes import WEIGHT, X, Y, Z
 from .lookup import ENERGY_CELLS, LAB_COARSER, SPEED_CELLS, energy_cell, speed_cell
 from .streams import advance_state, load_state, lower_one_to_two, one_to_two, store_state, upper_one_to_two
@@ -162,6 +162,13 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
         inverse_gas = inverse_majorant if gases == 1 else 1.0 / (above - below)
         store(rows, i + INVERSE_M_GAS * lanes, weight * inverse_gas if reached else 0.0)
         store(rows, i + VZ_BEFORE * lanes, vz)
+        electron_part = load_table(tables.electron_part, gas)
+        neutral_part = load_table(tables.neutral_part, gas)
+        if thermal:
+            # Mean loss over isotropic scattering: 2 M/(m + M) V.g, V the velocity of the centre of mass.
+            projection = electron_part * (vx * gx + vy * gy + vz * gz) + neutral_part * (ux * gx + uy * gy + uz * gz)
+            recoil = 2.0 * neutral_part * projection * elastic * weight * inverse_gas
+            store(rows, i + RECOIL * lanes, recoil if reached else 0.0)
 
         # Elastic collision.
         nx, ny, nz = isotropic_direction(word_direction)
@@ -170,7 +177,7 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
         store(rows, i + NZ * lanes, nz)
         after_x, after_y, after_z = scattered(
             vx, vy, vz, ux, uy, uz, relative, nx, ny, nz,
-            load_table(tables.electron_part, gas), load_table(tables.neutral_part, gas),
+            electron_part, neutral_part,
         )  # fmt: skip
         store(rows, i + VX * lanes, after_x if is_elastic else vx)
         store(rows, i + VY * lanes, after_y if is_elastic else vy)

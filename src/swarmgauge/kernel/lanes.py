@@ -28,7 +28,8 @@ GAS_CELL = 28  # integer: gas * SPEED_CELLS + cell of the relative speed
 LAB_CELL = 29  # integer: cell of the electron's own speed, for the energy distribution
 OUTCOME = 30  # integer: CUT, NULL, ELASTIC or RARE
 NX, NY, NZ = 31, 32, 33  # direction after the collision
-ROWS = 34
+RECOIL = 34  # warm gas: expected energy given up in elastic recoil x weight / majorant of the gas
+ROWS = 35
 
 CUT, NULL, ELASTIC, RARE = 0, 1, 2, 3
 

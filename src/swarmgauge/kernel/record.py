@@ -18,17 +18,20 @@ from .lanes import (
     LEFT,
     OUTCOME,
     RARE,
+    RECOIL,
     VZ_BEFORE,
 )
+from .lookup import SPEED_CELLS
 
 
-@njit(forceinline=True)
-def record(active, rows, histogram, lab_histogram, counts, lanes):
+@njit(inline="always")
+def record(active, rows, histogram, lab_histogram, recoil, counts, lanes, thermal):
     """Score the candidates of one step.
 
     histogram : (G * SPEED_CELLS, 2), flat; sums of weight / M_gas and of position in the cell x weight / M_gas.
     lab_histogram : (LAB_CELLS, 2), flat; sums of weight / M and of v_z x weight / M, v_z before the collision.
-    counts : (4,) int64; flights by outcome. All three are changed in place.
+    recoil : (G,); energy given up in elastic recoil, only in a warm gas. counts : (4,) int64; flights by outcome. All are
+    changed in place.
     """
     for i in range(active):
         counts[load_int(rows, i + OUTCOME * lanes)] += 1
@@ -38,6 +41,9 @@ def record(active, rows, histogram, lab_histogram, counts, lanes):
         store(histogram, cell, load(histogram, cell) + inverse_gas)
         at = load(histogram, cell + 1) + inverse_gas * load(rows, i + FRACTION * lanes)
         store(histogram, cell + 1, at)
+        if thermal:
+            gas = cell // (2 * SPEED_CELLS)
+            store(recoil, gas, load(recoil, gas) + load(rows, i + RECOIL * lanes))
         cell = 2 * load_int(rows, i + LAB_CELL * lanes)
         store(lab_histogram, cell, load(lab_histogram, cell) + inverse)
         at = load(lab_histogram, cell + 1) + inverse * load(rows, i + VZ_BEFORE * lanes)

@@ -1,0 +1,27 @@
+"""From tables to coefficients: cohorts of electrons, their sums, and estimates with errors.
+
+`simulate` computes one point; `PointRun` and `drive` do the same for many points over one executor.
+"""
+
+from importlib import import_module
+from typing import Any
+
+_HOME = {
+    "EnergyDistribution": "point",
+    "Estimate": "estimate",
+    "Field": "field",
+    "Point": "point",
+    "PointRun": "point_run",
+    "drive": "schedule",
+    "parse_accuracy": "targets",
+    "point_key": "plan",
+    "simulate": "schedule",
+    "solve_two_term": "two_term",
+}
+__all__ = sorted(_HOME)
+
+
+def __getattr__(name: str) -> Any:
+    if name not in _HOME:
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+    return getattr(import_module(f".{_HOME[name]}", __name__), name)

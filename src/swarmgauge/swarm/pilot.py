@@ -1,0 +1,96 @@
+"""The pilot cohort: how long a swarm relaxes, and whether it has a steady state at all."""
+
+import math
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from swarmgauge.kernel.cohort import SERIES_ENERGY, SERIES_TIME
+from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
+
+from .cohort import CohortFailure, CohortRun
+from .plan import LEAST_FLIGHTS, Plan
+
+PILOT_INDEX = -1  # its stream belongs to no cohort of the result
+MOST_STRETCHES = 12
+AGREEMENT = 3.0  # standard errors between two stretches that count as equal
+TOP_SPEED = 100.0  # sqrt(eV): 10 keV
+LARGEST_TOP_SHARE = 1e-3
+MOST_HALVINGS = 5
+
+
+@dataclass(frozen=True, eq=False)
+class Pilot:
+    """What the pilot found.
+
+    plan : with its windows set, or None where there is no steady swarm; outcome : "steady", "runaway" or "extinct".
+    stretch_energies : (n,), eV, mean energy of successive stretches of one memory each. note : how the cut was decided.
+    """
+
+    plan: Plan | None
+    outcome: str
+    stretch_energies: np.ndarray
+    note: str
+
+
+def fly_pilot(plan: Plan) -> Pilot:
+    """Fly one cohort from the start distribution until two successive stretches have the same mean energy.
+
+    A stretch is one memory (`lags` windows). All before the second of the two is cut; at least one stretch, since
+    displacement histories must be full. A swarm that has not come to rest after 12 stretches and still gains energy, or
+    that spends more than 0.1 % of its time above 10 keV, runs away.
+    """
+    for _ in range(MOST_HALVINGS):
+        try:
+            return _fly(plan)
+        except CohortFailure as failure:
+            if str(failure) == "extinct":
+                return Pilot(None, "extinct", np.zeros(0), "attachment took all electrons within one window")
+            plan = replace(plan, window_time=0.5 * plan.window_time)
+    return Pilot(None, "runaway", np.zeros(0), "the population grew by half within the shortest window tried")
+
+
+def _fly(plan: Plan) -> Pilot:
+    run = CohortRun(plan, PILOT_INDEX)
+    means: list[float] = []
+    errors: list[float] = []
+    for stretch in range(MOST_STRETCHES):
+        series = run.windows(plan.lags, True)
+        window_means = series[:, SERIES_ENERGY] / series[:, SERIES_TIME]
+        means.append(float(series[:, SERIES_ENERGY].sum() / series[:, SERIES_TIME].sum()))
+        errors.append(_stretch_error(window_means))
+        if _top_share(run) > LARGEST_TOP_SHARE:
+            return Pilot(None, "runaway", np.array(means), "more than 0.1 % of the time is spent above 10 keV")
+        if stretch > 0:
+            step = means[-1] - means[-2]
+            if abs(step) < AGREEMENT * math.hypot(errors[-1], errors[-2]):
+                note = f"mean energy of stretches {stretch} and {stretch + 1} of {plan.lags} windows agrees"
+                return Pilot(_with_windows(plan, run, stretch), "steady", np.array(means), note)
+    if means[-1] > means[-3] > means[-5]:
+        return Pilot(None, "runaway", np.array(means), "the mean energy still rises after twelve memories")
+    note = f"no two of {MOST_STRETCHES} stretches agree; all are cut"
+    return Pilot(_with_windows(plan, run, MOST_STRETCHES), "steady", np.array(means), note)
+
+
+def _stretch_error(window_means: np.ndarray) -> float:
+    """Standard error of the mean of windows; neighbours are correlated over some two windows (half a relaxation each)."""
+    if len(window_means) < 2:
+        return math.inf
+    return math.sqrt(5.0 * float(window_means.var(ddof=1)) / len(window_means))
+
+
+def _top_share(run: CohortRun) -> float:
+    """Share of the time spent above 10 keV."""
+    times = run.work.lab_histogram.reshape(LAB_CELLS, 2)[:, 0]
+    top = speed_edges()[:-1][:: 1 << LAB_COARSER] >= TOP_SPEED
+    total = float(times.sum())
+    return float(times[top].sum()) / total if total > 0.0 else 0.0
+
+
+def _with_windows(plan: Plan, run: CohortRun, cut_stretches: int) -> Plan:
+    """The plan with its cut, and as many measured windows as make relaxation a third of the work and enough flights."""
+    relaxation = cut_stretches * plan.lags
+    flown = min(cut_stretches + 1, MOST_STRETCHES) * plan.lags
+    flights_per_window = max(int(run.work.counts.sum()) / flown, 1.0)
+    measured = max(2 * relaxation, math.ceil(LEAST_FLIGHTS / flights_per_window))
+    return plan.with_windows(relaxation, measured)

@@ -1,0 +1,153 @@
+"""The plan of a point: everything that a cohort needs, fixed before the first one runs."""
+
+import hashlib
+import json
+import math
+from dataclasses import dataclass, replace
+from functools import cached_property
+from pathlib import Path
+
+import numpy as np
+
+from swarmgauge.gas import Mixture
+from swarmgauge.gas.constants import SPEED_1_EV
+from swarmgauge.kernel.cohort import kernel_digest
+from swarmgauge.kernel.lanes import lane_count
+from swarmgauge.kernel.lookup import Tables
+
+from .field import Field
+from .tables import TOWNSEND_IN_KERNEL_UNITS, UNIT_CROSS_SECTION_M2, ProcessCurve, build_tables, process_curves
+from .two_term import TwoTerm, solve_two_term
+
+RATE_UNIT = UNIT_CROSS_SECTION_M2 * SPEED_1_EV  # m^3/s of one kernel frequency unit
+ELECTRONS = 1024
+ELECTRONS_OF_LONG_MEMORY = 256
+LONG_MEMORY_FLIGHTS = 1e5  # collisions of one electron within the memory, above which cohorts are small
+MEMORY = 6.0  # displacement histories reach back this many relaxation times: what is cut off is exp(-6) of the tail
+WINDOWS_PER_RELAXATION = 2.0
+LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by attachment
+MOST_LAGS = 80
+LEAST_FLIGHTS = 3e6  # flights measured in a cohort
+
+_SOURCES = ("plan.py", "tables.py", "cohort.py", "pilot.py")
+
+
+@dataclass(frozen=True, eq=False)
+class Plan:
+    """What a cohort is a function of, with its index.
+
+    mixture, field, seed : the point. electrons : number in a cohort. lags : windows in a displacement history.
+    window_time : kernel units. start_edges_eV, start_cumulated : (n + 1,), start distribution.
+    relaxation_windows, measured_windows : dropped and used windows of a cohort.
+    """
+
+    mixture: Mixture
+    field: Field
+    seed: int
+    electrons: int
+    lags: int
+    window_time: float
+    start_edges_eV: np.ndarray
+    start_cumulated: np.ndarray
+    relaxation_windows: int = 0
+    measured_windows: int = 0
+    window_scale: float = 1.0
+
+    @property
+    def acceleration(self) -> float:
+        """Acceleration in kernel units."""
+        return TOWNSEND_IN_KERNEL_UNITS * self.field.E_over_N_Td
+
+    @property
+    def lanes(self) -> int:
+        """Lanes of the kernel; small cohorts use the kernel of large ones."""
+        return lane_count(max(self.electrons, ELECTRONS))
+
+    @cached_property
+    def curves(self) -> list[ProcessCurve]:
+        """Frequencies of the acting processes."""
+        return process_curves(self.mixture, passive=False)
+
+    @cached_property
+    def passive_curves(self) -> list[ProcessCurve]:
+        """Frequencies of the processes whose rate is computed but which do not act."""
+        return process_curves(self.mixture, passive=True)
+
+    @cached_property
+    def tables(self) -> Tables:
+        """Tables of the kernel."""
+        return build_tables(self.mixture, self.curves, self.acceleration, self.window_scale)
+
+    @cached_property
+    def stream_key(self) -> str:
+        """Hash of the conditions, from which the random streams start."""
+        return _hash({"mixture": self.mixture.canonical(), "field": _field(self.field)})
+
+    def with_windows(self, relaxation: int, measured: int) -> "Plan":
+        """The same with a relaxation cut and a length; keeps what has been computed."""
+        plan = replace(self, relaxation_windows=relaxation, measured_windows=measured)
+        plan.__dict__.update({k: v for k, v in self.__dict__.items() if k in ("curves", "passive_curves", "tables", "stream_key")})
+        return plan
+
+
+def first_plan(
+    mixture: Mixture, field: Field, seed: int, two_term: TwoTerm, *, electrons: int | None = None, window_scale: float = 1.0
+) -> Plan:
+    """A plan from the two-term solution; windows are still to be set by a pilot.
+
+    A window is half a relaxation time, or less where the population would change by more than 15 % in it. Numbers that
+    come from linear algebra are rounded (window to 2 digits, start distribution to 24 bits), so that the last bits,
+    which depend on the processor, do not reach the swarm.
+    """
+    values = two_term.values
+    collisions = values["collision_frequency_over_N"] / RATE_UNIT
+    relaxation = min(two_term.relaxation_frequency_over_N / RATE_UNIT, collisions)
+    change = max(abs(values.get(f"{kind}_frequency_over_N", 0.0)) for kind in ("ionization", "attachment")) / RATE_UNIT
+    window = 1.0 / (WINDOWS_PER_RELAXATION * relaxation)
+    if change > 0.0:
+        window = min(window, LARGEST_CHANGE / change)
+    window = float(f"{window:.2g}")
+    lags = min(max(math.ceil(MEMORY / (relaxation * window) - 0.5), 4), MOST_LAGS)
+    if electrons is None:
+        long_memory = MEMORY * collisions / relaxation > LONG_MEMORY_FLIGHTS
+        electrons = ELECTRONS_OF_LONG_MEMORY if long_memory else ELECTRONS
+    edges, cumulated = start_distribution(two_term)
+    return Plan(mixture, field, seed, electrons, lags, window, edges, cumulated, window_scale=window_scale)
+
+
+def start_distribution(two_term: TwoTerm) -> tuple[np.ndarray, np.ndarray]:
+    """Energy edges (eV) and share of electrons below each, rounded to 24 bits."""
+    edges = two_term.energy_edges_eV
+    share = np.maximum(two_term.f0, 0.0) * np.diff(edges**1.5)
+    cumulated = np.concatenate([[0.0], np.cumsum(share)])
+    rounded = np.round(cumulated / cumulated[-1] * 2.0**24) / 2.0**24
+    mantissa, exponent = np.frexp(edges)
+    return np.ldexp(np.round(mantissa * 2.0**24) / 2.0**24, exponent), rounded
+
+
+def point_key(mixture: Mixture, field: Field, seed: int) -> str:
+    """Hash of tables, conditions, seed, numerical parameters and kernel version: 32 hexadecimal digits."""
+    folder = Path(__file__).parent
+    method = hashlib.sha256(b"".join((folder / name).read_bytes() for name in _SOURCES)).hexdigest()
+    return _hash(
+        {
+            "mixture": mixture.canonical(),
+            "field": _field(field),
+            "seed": seed,
+            "method": method,
+            "kernel": kernel_digest(),
+        }
+    )[:32]
+
+
+def solved(mixture: Mixture, field: Field) -> TwoTerm:
+    """The two-term solution of a point."""
+    return solve_two_term(mixture, field.E_over_N_Td)
+
+
+def _field(field: Field) -> list[str]:
+    return [repr(v) for v in (field.E_over_N_Td, field.B_over_N_Hx, field.B_angle_deg, field.angular_frequency_over_N)]
+
+
+def _hash(content: dict) -> str:
+    return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()

@@ -1,0 +1,274 @@
+"""One point on its way: what is still to be computed, and when it is enough."""
+
+import math
+import time
+from collections.abc import Mapping
+from typing import Any
+
+import numpy as np
+
+from swarmgauge.gas import Mixture
+
+from .cohort import run_cohort
+from .estimate import Estimate, jackknife
+from .field import Field
+from .pilot import Pilot, fly_pilot
+from .plan import Plan, first_plan, point_key, solved
+from .point import Conditions, EnergyDistribution, Point, TargetStatus
+from .quantities import unit_of
+from .reduce import Reducer, lab_edges_eV
+from .targets import parse_accuracy, worst
+from .two_term import TwoTerm
+
+FIRST_COHORTS = 20
+FEWEST_COHORTS = 4  # below these the clock cannot stop a point: no error could be stated
+LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on unmentioned
+
+
+def prepare(mixture: Mixture, field: Field, seed: int) -> Pilot:
+    """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor."""
+    return fly_pilot(first_plan(mixture, field, seed, solved(mixture, field)))
+
+
+class PointRun:
+    """A point under way. `drive` feeds it; `result` may be asked for at any time after the first cohorts.
+
+    mixture, field, seed, accuracy : as for `simulate`. max_minutes : wall clock for this point. state : of an earlier
+    run of the same key, to go on from.
+    """
+
+    def __init__(
+        self,
+        mixture: Mixture,
+        field: Field,
+        *,
+        seed: int = 1,
+        accuracy: Mapping[str, Any] | None = None,
+        max_minutes: float = 5.0,
+        state: Mapping[str, Any] | None = None,
+    ) -> None:
+        self.mixture, self.field, self.seed = mixture, field, seed
+        self.targets = parse_accuracy(accuracy)
+        self.max_minutes = max_minutes
+        self.key = point_key(mixture, field, seed)
+        self.pilot: Pilot | None = None
+        self.finished = False
+        self.cpu_seconds = 0.0
+        self.wall_seconds = 0.0
+        self._begin: float | None = None
+        self._sums: dict[int, np.ndarray] = {}
+        self._wanted = FIRST_COHORTS
+        self._point: Point | None = None
+        self._two_term: TwoTerm | None = None
+        if state is not None:
+            self._restore(state)
+
+    # What is to be done
+
+    def missing(self) -> list[int]:
+        """Indices of the cohorts that are wanted now and not there; none before the pilot is back."""
+        if self.finished or self.pilot is None:
+            return []
+        return [index for index in range(self._wanted) if index not in self._sums]
+
+    def start_clock(self) -> None:
+        """Begin counting wall time, at the first piece of work."""
+        if self._begin is None:
+            self._begin = time.monotonic()
+
+    def set_pilot(self, pilot: Pilot) -> None:
+        """Take the pilot's answer; without a steady swarm the point is finished."""
+        self.pilot = pilot
+        if pilot.plan is None:
+            self._finish()
+
+    def add(self, index: int, sums: np.ndarray, cpu_seconds: float) -> None:
+        """Take a cohort; when all that are wanted are there, judge, and ask for as many again if a target is missed."""
+        self._sums[index] = sums
+        self.cpu_seconds += cpu_seconds
+        self._point = None
+        if not self.finished and not self.missing():
+            if self.worst[1] <= 1.0:
+                self._finish()
+            else:
+                self._wanted *= 2
+
+    def check_clock(self, stop: bool = False) -> None:
+        """Finish with what is there if the time of the point, or (stop) of the campaign, is over."""
+        if self.finished or self._begin is None:
+            return
+        over = time.monotonic() - self._begin > 60.0 * self.max_minutes
+        if (over or stop) and self.cohorts >= FEWEST_COHORTS:
+            self._finish()
+
+    def _finish(self) -> None:
+        self.finished = True
+        if self._begin is not None:
+            self.wall_seconds += time.monotonic() - self._begin
+            self._begin = None
+
+    # What is known
+
+    @property
+    def cohorts(self) -> int:
+        """Cohorts at hand without a gap from the first one: the ones that count."""
+        count = 0
+        while count in self._sums:
+            count += 1
+        return count
+
+    @property
+    def worst(self) -> tuple[str, float]:
+        """The judged quantity furthest from its target, and its error over the target; ("", nan) before any is known."""
+        if self.cohorts < 2 or self.pilot is None or self.pilot.plan is None:
+            return "", math.nan
+        return self.result().worst
+
+    def state(self) -> dict[str, Any]:
+        """All that is needed to go on later: sums of every cohort and what the pilot decided."""
+        count = self.cohorts
+        pilot = self.pilot
+        state: dict[str, Any] = {
+            "cpu_seconds": self.cpu_seconds,
+            "wall_seconds": self.wall_seconds,
+            "outcome": pilot.outcome if pilot else "",
+            "note": pilot.note if pilot else "",
+            "stretch_energies": pilot.stretch_energies if pilot else np.zeros(0),
+        }
+        if pilot and pilot.plan:
+            plan = pilot.plan
+            state |= {
+                "window_time": plan.window_time,
+                "electrons": plan.electrons,
+                "lags": plan.lags,
+                "relaxation_windows": plan.relaxation_windows,
+                "measured_windows": plan.measured_windows,
+                "start_edges_eV": plan.start_edges_eV,
+                "start_cumulated": plan.start_cumulated,
+                "sums": np.array([self._sums[index] for index in range(count)]),
+            }
+        return state
+
+    def _restore(self, state: Mapping[str, Any]) -> None:
+        if not state["outcome"]:
+            return
+        plan = None
+        self.cpu_seconds, self.wall_seconds = state["cpu_seconds"], state["wall_seconds"]
+        if state["outcome"] == "steady":
+            plan = Plan(
+                self.mixture,
+                self.field,
+                self.seed,
+                int(state["electrons"]),
+                int(state["lags"]),
+                float(state["window_time"]),
+                state["start_edges_eV"],
+                state["start_cumulated"],
+                int(state["relaxation_windows"]),
+                int(state["measured_windows"]),
+            )
+            self._sums = dict(enumerate(state["sums"]))
+        self.set_pilot(Pilot(plan, state["outcome"], state["stretch_energies"], state["note"]))
+        if plan is None:
+            return
+        while self._wanted < len(self._sums):
+            self._wanted *= 2
+        if len(self._sums) == self._wanted and self.worst[1] <= 1.0:
+            self._finish()
+        elif len(self._sums) == self._wanted:
+            self._wanted *= 2
+
+    # The result
+
+    def result(self) -> Point:
+        """The point as far as it is known."""
+        if self._point is None or (self._point.status == "interrupted") == self.finished:
+            self._point = self._build()
+        return self._point
+
+    def _build(self) -> Point:
+        if self._two_term is None:
+            self._two_term = solved(self.mixture, self.field)
+        if self.pilot is None or self.pilot.plan is None or self.cohorts < 2:
+            return self._without_swarm()
+        reducer = Reducer(self.pilot.plan)
+        rows = np.array([self._sums[index] for index in range(self.cohorts)])
+        estimates, eedf = estimates_of(reducer, rows)
+        judged = worst(self.targets, estimates, self.field.E_over_N_Td)
+        name, excess = max(((n, e) for n, (_, e) in judged.items()), key=lambda pair: pair[1], default=("", 0.0))
+        status = "done" if excess <= 1.0 else ("target missed" if self.finished else "interrupted")
+        above = reducer.time_above_tables(rows)
+        return Point(
+            conditions=Conditions(self.mixture, self.field, self.seed),
+            estimates=estimates,
+            eedf=eedf,
+            two_term=self._two_term.values,
+            targets={n: TargetStatus(str(target), e <= 1.0, e) for n, (target, e) in judged.items()},
+            warnings=self._warnings(above),
+            status=status,
+            cohorts=self.cohorts,
+            worst=(name, excess),
+            wall_seconds=self.wall_seconds,
+            cpu_seconds=self.cpu_seconds,
+            relaxation=f"{self.pilot.plan.relaxation_windows} windows cut: {self.pilot.note}",
+            above_tables=above,
+        )
+
+    def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
+        lines = []
+        noted = sorted(((s, n) for n, s in above.items() if s > LARGEST_TABLE_SHARE), reverse=True)
+        if noted:
+            shown = ", ".join(f"{name} {100 * share:.2g} %" for share, name in noted[:3])
+            more = f" and {len(noted) - 3} more" if len(noted) > 3 else ""
+            lines.append(f"time spent above the end of a table: {shown}{more}")
+        if 0 < self.cohorts < FIRST_COHORTS:
+            lines.append(
+                f"only {self.cohorts} of at least {FIRST_COHORTS} cohorts: errors are rough; give more minutes per point"
+            )
+        return tuple(lines)
+
+    def _without_swarm(self) -> Point:
+        """A point with no estimates: no steady swarm, or not yet any cohorts."""
+        outcome = self.pilot.outcome if self.pilot else ""
+        status = outcome if outcome in ("runaway", "extinct") else "interrupted"
+        note = (f"{outcome}: {self.pilot.note}; no coefficients are given",) if self.pilot and outcome != "steady" else ()
+        empty = np.zeros(0)
+        assert self._two_term is not None
+        return Point(
+            conditions=Conditions(self.mixture, self.field, self.seed),
+            estimates={},
+            eedf=EnergyDistribution(np.zeros(1), empty, empty, empty, empty),
+            two_term=self._two_term.values,
+            targets={},
+            warnings=note,
+            status=status,
+            cohorts=0,
+            worst=("", math.nan),
+            wall_seconds=self.wall_seconds,
+            cpu_seconds=self.cpu_seconds,
+        )
+
+
+def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate], EnergyDistribution]:
+    """Estimates and energy distribution from the sums of independent cohorts, (cohorts, columns)."""
+    names: list[str] = list(reducer.quantities(rows[:1]))
+
+    def everything(sums: np.ndarray) -> np.ndarray:
+        return np.concatenate([np.stack(list(reducer.quantities(sums).values()), axis=1), *reducer.distribution(sums)], axis=1)
+
+    values, errors = jackknife(everything, rows)
+    known = dict(zip(names, values, strict=False))
+    total_time = float(rows[:, reducer.layout.slices["time"]].sum())
+    bounds = reducer.upper_bounds(total_time, known)
+    estimates = {}
+    for place, name in enumerate(names):
+        bound = bounds.get(name, math.nan)
+        error = math.nan if name in bounds else float(errors[place])
+        estimates[name] = Estimate(float(values[place]), error, unit_of(name), len(rows), bound)
+    bins = (len(values) - len(names)) // 2
+    f0, f1 = slice(len(names), len(names) + bins), slice(len(names) + bins, None)
+    filled = int(np.flatnonzero(values[f0])[-1]) + 1  # empty bins above the fastest electron are left out
+    eedf = EnergyDistribution(
+        lab_edges_eV()[: filled + 1], values[f0][:filled], errors[f0][:filled], values[f1][:filled], errors[f1][:filled]
+    )
+    return estimates, eedf

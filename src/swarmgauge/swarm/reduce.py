@@ -1,0 +1,209 @@
+"""From sums of cohorts to coefficients: the formulas, each a function of the mean sums."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from swarmgauge.gas.constants import E_CHARGE, SPEED_1_EV, TOWNSEND
+from swarmgauge.kernel.history import (
+    END_R,
+    END_WEIGHT,
+    LAG_SUMS,
+    LAG_TT,
+    LAG_TT_R,
+    LAG_XY_VXY,
+    LAG_Z,
+    LAG_Z_R,
+    LAG_Z_TIME,
+    LAG_Z_VZ,
+    LAG_ZZ,
+    LAG_ZZ_R,
+    PATH,
+    PATH_ACROSS_SQUARED,
+    PATH_SQUARED,
+)
+from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
+
+from .cohort import SumsLayout, layout_of, serial_sum
+from .plan import RATE_UNIT, Plan
+from .quantities import in_order
+from .tables import UNIT_CROSS_SECTION_M2
+
+DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
+UNSEEN_EVENTS = 2.9957322735539909  # -ln 0.05: 95 % upper bound on the expected number of events where none was seen
+
+
+def lab_edges_eV() -> np.ndarray:
+    """Edges of the energy distribution, eV; shape (LAB_CELLS + 1,)."""
+    return speed_edges()[:: 1 << LAB_COARSER] ** 2
+
+
+@dataclass(frozen=True)
+class Reducer:
+    """The coefficients of a plan as functions of its sums; every method takes rows of sums and works row by row."""
+
+    plan: Plan
+
+    @property
+    def layout(self) -> SumsLayout:
+        """Layout of the rows."""
+        return layout_of(self.plan)
+
+    def part(self, rows: np.ndarray, name: str) -> np.ndarray:
+        """Columns of a name divided by the total time."""
+        return rows[:, self.layout.slices[name]] / rows[:, self.layout.slices["time"]]
+
+    def quantities(self, rows: np.ndarray) -> dict[str, np.ndarray]:
+        """Quantity name to values, one per row, in the order of output."""
+        result = {**self.transport(rows), **self.rates(rows)}
+        result.update(self.power(rows, result))
+        return {name: result[name] for name in in_order(result)}
+
+    def distribution(self, rows: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """f0 and f1 on the cells of `lab_edges_eV`, eV^-3/2; shapes (rows, LAB_CELLS).
+
+        Bin means, f0 weighted with sqrt(e) and f1 with e, so that int f0 sqrt(e) de = 1 and
+        (1/3) sqrt(2e/m) int e f1 de = W_flux hold for the bins as they are.
+        """
+        lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)
+        total = serial_sum(lab[:, :, 0])[:, None]
+        edges = lab_edges_eV()
+        root = np.sqrt(edges)
+        f0 = lab[:, :, 0] / total / np.diff(edges * root * (2.0 / 3.0))
+        f1 = 3.0 * lab[:, :, 1] / total / np.diff(0.5 * edges * edges)
+        return f0, f1
+
+    def transport(self, rows: np.ndarray) -> dict[str, np.ndarray]:
+        """Mean energy, drift and diffusion, flux and bulk; sums as derived in kernel.history."""
+        lag = rows[:, self.layout.slices["lag"]].reshape(len(rows), LAG_SUMS, self.plan.lags)[:, :, -1]
+        point = rows[:, self.layout.slices["point"]]
+        time = rows[:, self.layout.slices["time"]][:, 0]
+        drift = point[:, PATH] / time
+        mean_z = (lag[:, LAG_Z_TIME] + rows[:, self.layout.slices["z_time"]][:, 0]) / time
+        diffusion_l = (lag[:, LAG_Z_VZ] + point[:, PATH_SQUARED]) / time - mean_z * drift
+        diffusion_t = 0.5 * (lag[:, LAG_XY_VXY] + point[:, PATH_ACROSS_SQUARED]) / time
+        bulk = (drift, diffusion_l, diffusion_t)
+        if self._population_changes():
+            bulk = self._bulk(lag, point, *bulk)
+        result = {"mean_energy": self.part(rows, "energy")[:, 0]}
+        names = (("flux", (drift, diffusion_l, diffusion_t)), ("bulk", bulk))
+        field = self.plan.field.E_over_N_Td * TOWNSEND
+        for kind, (w, dl, dt) in names:
+            result[f"diffusion_L_times_N_{kind}"] = dl * DIFFUSION_UNIT
+            result[f"diffusion_T_times_N_{kind}"] = dt * DIFFUSION_UNIT
+            if field == 0.0:
+                result[f"drift_velocity_{kind}"] = np.zeros(len(rows))
+                continue
+            mobility = w * SPEED_1_EV / field
+            result[f"drift_velocity_{kind}"] = w * SPEED_1_EV
+            result[f"mobility_times_N_{kind}"] = mobility
+            result[f"characteristic_energy_T_{kind}"] = dt * DIFFUSION_UNIT / mobility
+            result[f"characteristic_energy_L_{kind}"] = dl * DIFFUSION_UNIT / mobility
+        return result
+
+    @staticmethod
+    def _bulk(lag, point, drift, diffusion_l, diffusion_t):
+        """W + Cov(Z, R), D_L + 1/2 <(dZ^2 - <dZ^2>) R> and the like for one transverse direction."""
+        weight = point[:, END_WEIGHT]
+        rate = point[:, END_R] / weight
+        z, zz, z_rate, zz_rate = (lag[:, row] / weight for row in (LAG_Z, LAG_ZZ, LAG_Z_R, LAG_ZZ_R))
+        across, across_rate = lag[:, LAG_TT] / weight, lag[:, LAG_TT_R] / weight
+        second = zz_rate - 2.0 * z * z_rate + z * z * rate - (zz - z * z) * rate
+        return (
+            drift + z_rate - z * rate,
+            diffusion_l + 0.5 * second,
+            diffusion_t + 0.25 * (across_rate - across * rate),
+        )
+
+    def _population_changes(self) -> bool:
+        return any(curve.process.kind in ("ionization", "attachment") for curve in self.plan.curves)
+
+    def rates(self, rows: np.ndarray) -> dict[str, np.ndarray]:
+        """Rate of every process per density of its target, and the frequencies of the mixture."""
+        mixture = self.plan.mixture
+        per_target = self.part(rows, "rate")
+        result: dict[str, np.ndarray] = {}
+        sums: dict[str, np.ndarray] = {}
+        for column, curve in enumerate(self.plan.curves + self.plan.passive_curves):
+            gas = mixture.gases[curve.gas]
+            rate = per_target[:, column] * RATE_UNIT
+            name = f"{gas.name}/{curve.process.id}"
+            if curve.process.third_body is None:
+                result[f"rate:{name}"] = rate
+            else:
+                density = mixture.body_density_m3(gas, curve.process)
+                result[f"rate3:{name}"] = rate / density if density > 0.0 else np.zeros(len(rows))
+            if column < len(self.plan.curves):
+                share = mixture.fractions[curve.gas] * rate
+                for key in ("collision", curve.process.kind):
+                    sums[key] = sums.get(key, 0.0) + share
+        result["collision_frequency_over_N"] = sums["collision"]
+        for kind in ("ionization", "attachment"):
+            if kind in sums:
+                result[f"{kind}_frequency_over_N"] = sums[kind]
+        if self._population_changes():
+            zero = np.zeros(len(rows))
+            result["net_frequency_over_N"] = sums.get("ionization", zero) - sums.get("attachment", zero)
+        lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)[:, :, 0]
+        edges = np.sqrt(lab_edges_eV())
+        # mean speed in a bin filled evenly in volume: 3/4 (b^4 - a^4)/(b^3 - a^3)
+        speed = 0.75 * np.diff(edges**4) / np.diff(edges**3)
+        mean_speed = serial_sum(lab * speed) / serial_sum(lab) * SPEED_1_EV
+        result["mean_free_path_times_N"] = mean_speed / sums["collision"]
+        return result
+
+    def power(self, rows: np.ndarray, known: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
+        """Field heating and where it goes: elastic recoil, thresholds, attached electrons, new electrons."""
+        field = self.plan.field.E_over_N_Td * TOWNSEND
+        if field == 0.0:
+            return {}
+        heating = known["drift_velocity_flux"] * field  # eV m^3/s
+        result = {"field_heating_over_N": heating * E_CHARGE}
+        rates = self.part(rows, "rate")
+        recoil = self.part(rows, "recoil")
+        attached = self.part(rows, "attached_energy")
+        spent = np.zeros(len(rows))
+        for column, curve in enumerate(self.plan.curves):
+            gas = self.plan.mixture.gases[curve.gas]
+            share = self.plan.mixture.fractions[curve.gas]
+            if curve.process.kind == "elastic":
+                loss = recoil[:, curve.gas]
+            elif curve.process.kind == "attachment":
+                loss = share * attached[:, column]
+            else:
+                loss = share * curve.process.threshold_eV * rates[:, column]
+            fraction = loss * RATE_UNIT / heating
+            result[f"loss_fraction:{gas.name}/{curve.process.id}"] = fraction
+            spent = spent + fraction
+        if self._population_changes():
+            fraction = known["net_frequency_over_N"] * known["mean_energy"] / heating
+            result["loss_fraction:population_change"] = fraction
+            spent = spent + fraction
+        result["energy_balance_residual"] = 1.0 - spent
+        return result
+
+    def upper_bounds(self, total_time: float, names: dict[str, np.ndarray]) -> dict[str, float]:
+        """95 % upper bounds of what was never seen: fewer than 3 events in the total time (kernel units), name to bound."""
+        mixture = self.plan.mixture
+        per_time = UNSEEN_EVENTS / total_time * RATE_UNIT
+        bounds: dict[str, float] = {}
+        for curve in self.plan.curves + self.plan.passive_curves:
+            gas = mixture.gases[curve.gas]
+            share = float(mixture.fractions[curve.gas])
+            name = f"{gas.name}/{curve.process.id}"
+            body = mixture.body_density_m3(gas, curve.process)
+            kind = "rate:" if curve.process.third_body is None else "rate3:"
+            if share > 0.0 and body > 0.0:
+                bounds[kind + name] = per_time / (share if kind == "rate:" else share * body)
+        for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
+            bounds[name] = per_time
+        return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}
+
+    def time_above_tables(self, rows: np.ndarray) -> dict[str, float]:
+        """Share of the time spent above the last tabulated energy, for each process where it is not 0."""
+        shares = self.part(rows.sum(axis=0, keepdims=True), "above_end")[0]
+        return {
+            f"{self.plan.mixture.gases[curve.gas].name}/{curve.process.id}": float(share)
+            for curve, share in zip(self.plan.curves + self.plan.passive_curves, shares, strict=True)
+            if share > 0.0
+        }
