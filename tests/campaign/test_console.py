@@ -98,6 +98,11 @@ def test_a_warning_of_many_points_is_told_once():
     assert "~ 10 to 50 Td: the tail is thin." in list(warnings(points))
 
 
+def test_warnings_of_one_kind_are_told_for_the_last_point():
+    points = [point(field, warnings=(f"above a table: {field} %",)) for field in (10, 20)]
+    assert list(warnings(points)) == ["~ 10, 20 Td, here for 20 Td: above a table: 20 % (all in provenance.json)"]
+
+
 def test_long_blocks_are_cut_and_counted():
     lines = list(table([point(field) for field in range(10, 36)]))
     assert len(lines) == 3 + 20 + 2

@@ -161,7 +161,7 @@ def test_no_field_gives_maxwellian_and_einstein_relation(model, exponent):
     assert math.isnan(values["energy_balance_residual"])
 
 
-@pytest.mark.parametrize("sharing", ["uniform", "equal", {"fixed": 0.2}])
+@pytest.mark.parametrize("sharing", ["uniform", "equal", {"fraction": 0.2}])
 @pytest.mark.parametrize(("ionization", "attachment"), [(3e-15, 1e-15), (1e-15, 3e-15), (2e-15, 2e-15)])
 def test_constant_ionization_and_attachment_frequencies(model, sharing, ionization, attachment):
     # Exact: growth nu_i - nu_a; sources at all energies alike make bulk = flux; with the momentum loss

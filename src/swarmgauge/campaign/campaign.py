@@ -9,7 +9,10 @@ from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 
-from swarmgauge.swarm import Point, PointRun, drive, point_key
+from swarmgauge.swarm.plan import point_key
+from swarmgauge.swarm.point import Point
+from swarmgauge.swarm.point_run import PointRun
+from swarmgauge.swarm.schedule import drive
 
 from .provenance import provenance
 from .results import COEFFICIENTS, DISTRIBUTIONS, PROVENANCE, coefficients_csv, distributions_csv
@@ -23,7 +26,7 @@ Watch = Callable[[PointRun], None]
 class Outcome:
     """What a campaign came to.
 
-    folder : where it is. points : key to point, in the order of the run file; those finished where it was interrupted.
+    folder : where it is. points : key to point, in the order of the run file; only those that are finished.
     asked : number of points asked for. reused : how many were there before. set_aside : damaged point files, each with
     what was wrong. interrupted : by Ctrl-C.
     """
@@ -38,8 +41,8 @@ class Outcome:
 
     @property
     def missed(self) -> bool:
-        """Whether a point missed a target or has no steady state."""
-        return any(point.status != "done" for point in self.points.values())
+        """Whether a point missed a target, has no steady state or was not reached in time."""
+        return len(self.points) < self.asked or any(point.status != "done" for point in self.points.values())
 
     def __repr__(self) -> str:
         state = "interrupted" if self.interrupted else "targets missed" if self.missed else "done"
@@ -98,7 +101,7 @@ def run_campaign(
                 )
             except KeyboardInterrupt:
                 interrupted = True
-                _keep_unfinished(runs, store)
+        _keep_unfinished(runs, store)
         points = {run.key: run.result() for run in runs if run.finished}
         wall_seconds = time.monotonic() - begin
         _write_tables(store, run_file, points, wall_seconds)

@@ -5,7 +5,7 @@ from collections.abc import Iterator, Sequence
 from itertools import groupby, pairwise
 
 from swarmgauge.gas import Mixture
-from swarmgauge.swarm import Point
+from swarmgauge.swarm.point import Point
 
 from .number import compact, format_bound, format_estimate
 from .trust import outside
@@ -51,8 +51,10 @@ def describe(mixture: Mixture) -> str:
 
 
 def wrapped(text: str, indent: str = "    ") -> list[str]:
-    """Lines of at most 80 columns; long words such as paths stay whole."""
-    return textwrap.wrap(text, WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
+    """Lines of at most 80 columns; long words such as paths stay whole, and so do a number and its per cent sign."""
+    whole = text.replace(" %", "\N{NO-BREAK SPACE}%")
+    lines = textwrap.wrap(whole, WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
+    return [line.replace("\N{NO-BREAK SPACE}", " ") for line in lines]
 
 
 def _rows(points: Sequence[Point]) -> Iterator[str]:
@@ -92,9 +94,11 @@ def _cell(point: Point, name: str) -> str:
 
 
 def _judgement(point: Point) -> str:
-    """Worst error over its target, with ! where it is missed; what ended the swarm where nothing is judged."""
+    """Worst error over its target, with ! where it is missed; a dash where nothing is judged."""
     missed = "!" if missed_target(point) else ""
-    _, excess = point.worst
+    name, excess = point.worst
+    if not name:
+        return f"-{missed}"
     if not excess < 1000:
         return f">999{missed}"
     return f"{excess:.2f}{missed}" if excess < 10 else f"{excess:.0f}{missed}"

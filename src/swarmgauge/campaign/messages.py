@@ -5,7 +5,7 @@ from collections.abc import Iterable, Iterator, Sequence
 from pathlib import Path
 
 from swarmgauge.gas import Mixture
-from swarmgauge.swarm import Point
+from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.targets import Target
 
 from .campaign import Outcome
@@ -45,6 +45,11 @@ def closing(run_file: RunFile, outcome: Outcome) -> Iterator[str]:
             f"interrupted: {len(points)} of {outcome.asked} points are finished and kept. "
             "Give the same command again to go on from here."
         )
+    elif len(points) < outcome.asked:
+        yield from wrapped(
+            f"! time was over with {outcome.asked - len(points)} of {outcome.asked} points not reached. "
+            "Give the same command again, with more minutes, to go on from here."
+        )
     reused = f", {outcome.reused} of them from before" if outcome.reused else ""
     figures = "" if outcome.interrupted else ", figures/"
     yield from wrapped(
@@ -67,17 +72,20 @@ def remedies(points: Sequence[Point], max_minutes: float) -> Iterator[str]:
 
 
 def warnings(points: Sequence[Point]) -> Iterator[str]:
-    """Each warning once, with the fields that it holds for."""
-    fields: dict[str, list[str]] = {}
+    """Each kind of warning once, with the fields that it holds for; a kind is what stands before a colon."""
+    kinds: dict[str, list[tuple[str, str]]] = {}
     for point in points:
         conditions = point.conditions
         for text in (*point.warnings, *outside(conditions.mixture, conditions.field)):
-            fields.setdefault(text, []).append(field_text(point))
-    found = list(fields.items())
-    for text, where in found[:MOST_WARNINGS]:
-        yield from wrapped(f"~ {_range(where)} Td: {text}")
+            kinds.setdefault(text.partition(":")[0], []).append((field_text(point), text))
+    found = list(kinds.values())
+    for kind in found[:MOST_WARNINGS]:
+        fields, texts = zip(*kind, strict=True)
+        one = len(set(texts)) == 1
+        place = f"~ {_range(fields)} Td" if one else f"~ {_range(fields)} Td, here for {fields[-1]} Td"
+        yield from wrapped(f"{place}: {texts[-1]}" + ("" if one else " (all in provenance.json)"))
     if len(found) > MOST_WARNINGS:
-        yield f"~ and {len(found) - MOST_WARNINGS} more warnings in provenance.json"
+        yield f"~ and {len(found) - MOST_WARNINGS} more kinds of warnings in provenance.json"
 
 
 def _reach(target: Target) -> str:
@@ -93,7 +101,7 @@ def _third_bodies(mixture: Mixture) -> Iterator[str]:
         for process in mixture.acting(gas):
             if process.third_body is not None:
                 bodies = mixture.third_bodies(gas, process)
-                named = ", ".join(f"{name} (x {efficiency:g})" for name, efficiency in bodies.items()) or "none"
+                named = ", ".join(f"{efficiency:g} x {name}" for name, efficiency in bodies.items()) or "none"
                 yield f"{gas.name}/{process.id}: third bodies that act: {named}"
 
 

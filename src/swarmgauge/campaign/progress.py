@@ -1,14 +1,17 @@
 """Bars on the error stream: the points, and the accuracy that the point in work has reached."""
 
 import sys
+import time
 from types import TracebackType
 from typing import TextIO
 
 from tqdm import tqdm
 
-from swarmgauge.swarm import PointRun
+from swarmgauge.swarm.point_run import PointRun
 
 from .console import WIDTH
+
+_SECONDS_BETWEEN_LOOKS = 0.3  # what a point has reached is some milliseconds' work to find out
 
 
 class Bars:
@@ -23,6 +26,7 @@ class Bars:
         self._disable = None if shown else True  # None: tqdm shows bars on a terminal only
         self._points: tqdm | None = None
         self._accuracy: tqdm | None = None
+        self._next_look = 0.0
 
     def __enter__(self) -> "Bars":
         return self
@@ -59,8 +63,10 @@ class Bars:
 
     def progress(self, run: PointRun) -> None:
         """Show what a point has reached."""
-        if self._accuracy is None:
+        now = time.monotonic()
+        if self._accuracy is None or self._accuracy.disable or now < self._next_look:
             return
+        self._next_look = now + _SECONDS_BETWEEN_LOOKS
         name, excess = run.worst
         self._accuracy.set_description_str(
             f"{run.field.E_over_N_Td:g} Td, {name}: {excess:.2g} x target", refresh=False

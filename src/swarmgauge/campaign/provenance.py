@@ -11,7 +11,7 @@ from typing import Any
 
 import swarmgauge
 from swarmgauge.gas import Gas, Mixture
-from swarmgauge.swarm import Point
+from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.targets import DEFAULT_ACCURACY
 
 from .results import checksum

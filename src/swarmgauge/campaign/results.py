@@ -13,7 +13,7 @@ from typing import Any
 import numpy as np
 
 from swarmgauge.gas import InputError
-from swarmgauge.swarm import Point
+from swarmgauge.swarm.point import Point
 
 COEFFICIENTS = "coefficients.csv"
 DISTRIBUTIONS = "distributions.csv"

@@ -6,7 +6,8 @@ from itertools import groupby
 from pathlib import Path
 from typing import Any
 
-from swarmgauge.swarm import Estimate, point_key
+from swarmgauge.swarm.estimate import Estimate
+from swarmgauge.swarm.plan import point_key
 
 from .campaign import Outcome
 from .console import describe, wrapped

@@ -1,8 +1,9 @@
 """Reinterpreting the bits of doubles, and array access that lets LLVM use vector instructions.
 
 `load` and `store` skip numba's wrap-around of negative indices. All lane data, integers and random words too, live in
-one float64 array: with a single base pointer and constant strides LLVM needs no run-time overlap checks. `load_table` also promises (alias metadata) that no
-store of the hot loop touches a table, without which LLVM refuses to vectorise ("cannot identify array bounds").
+one float64 array: with a single base pointer and constant strides LLVM needs no run-time overlap checks. `load_table`
+also promises (alias metadata) that no store of the hot loop touches a table, without which LLVM refuses to vectorise
+("cannot identify array bounds").
 With NUMBA_DISABLE_JIT=1 the plain twins below take their place.
 """
 
@@ -11,7 +12,7 @@ from llvmlite import ir
 from numba import config, types
 from numba.extending import intrinsic
 
-if config.DISABLE_JIT:
+if config.DISABLE_JIT:  # type: ignore[attr-defined]
 
     def bits_of(x):
         return np.float64(x).view(np.int64)

@@ -209,7 +209,7 @@ def kernel_digest() -> str:
 
 @cache
 def compiled_windows(lanes: int, gases: int, thermal: bool):
-    """The entry kernel for a number of lanes and gases, cold or thermal; same arguments as `windows` less the last three.
+    """The entry kernel for a number of lanes and gases, cold or thermal; arguments of `windows` less the last three.
 
     numba does not notice edits in other files: the digest in the closure makes it compile anew after any edit of this
     package. Where no folder can be written, nothing is cached.
@@ -223,7 +223,7 @@ def compiled_windows(lanes: int, gases: int, thermal: bool):
             tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal
         )
 
-    if config.DISABLE_JIT:
+    if config.DISABLE_JIT:  # type: ignore[attr-defined]
         return run_windows
     try:
         return njit(cache=True, nogil=True, error_model="numpy")(run_windows)

@@ -10,9 +10,39 @@ from numba import njit
 
 from .bits import load, load_table, store, store_int
 from .functions import log, sincos_turn
-from .lanes import CUT, ELASTIC, FRACTION, GAS_CELL, INVERSE_M, INVERSE_M_GAS, LAB_CELL, LEFT, NULL, NX, NY
-from .lanes import NZ, OUTCOME, RARE, RECOIL, REMAINDER, STREAM, SUM_ENERGY, SUM_TIME, SUM_Z, UX, UY, UZ, VX, VY, VZ, VZ_BEFORE
-from .lanes import WEIGHT, X, Y, Z
+from .lanes import (
+    CUT,
+    ELASTIC,
+    FRACTION,
+    GAS_CELL,
+    INVERSE_M,
+    INVERSE_M_GAS,
+    LAB_CELL,
+    LEFT,
+    NULL,
+    NX,
+    NY,
+    NZ,
+    OUTCOME,
+    RARE,
+    RECOIL,
+    REMAINDER,
+    STREAM,
+    SUM_ENERGY,
+    SUM_TIME,
+    SUM_Z,
+    UX,
+    UY,
+    UZ,
+    VX,
+    VY,
+    VZ,
+    VZ_BEFORE,
+    WEIGHT,
+    X,
+    Y,
+    Z,
+)
 from .lookup import ENERGY_CELLS, LAB_COARSER, SPEED_CELLS, energy_cell, speed_cell
 from .streams import advance_state, load_state, lower_one_to_two, one_to_two, store_state, upper_one_to_two
 

@@ -12,7 +12,9 @@ from .bits import bits_of, double_of
 
 ONE_BITS = 0x3FF0000000000000  # the bits of 1.0
 MANTISSA = 0x000FFFFFFFFFFFFF
-_TWO52_BITS = 0x4330000000000000  # the bits of 2^52: or-ing a small integer in makes 2^52 + integer, without a conversion
+_TWO52_BITS = (
+    0x4330000000000000  # the bits of 2^52: or-ing a small integer in makes 2^52 + integer, without a conversion
+)
 _LN2 = 0.6931471805599453
 _SQRT2 = 1.4142135623730951
 

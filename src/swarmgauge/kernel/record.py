@@ -30,8 +30,8 @@ def record(active, rows, histogram, lab_histogram, recoil, counts, lanes, therma
 
     histogram : (G * SPEED_CELLS, 2), flat; sums of weight / M_gas and of position in the cell x weight / M_gas.
     lab_histogram : (LAB_CELLS, 2), flat; sums of weight / M and of v_z x weight / M, v_z before the collision.
-    recoil : (G,); energy given up in elastic recoil, only in a warm gas. counts : (4,) int64; flights by outcome. All are
-    changed in place.
+    recoil : (G,); energy given up in elastic recoil, only in a warm gas. counts : (4,) int64; flights by outcome.
+    All are changed in place.
     """
     for i in range(active):
         counts[load_int(rows, i + OUTCOME * lanes)] += 1

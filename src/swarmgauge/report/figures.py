@@ -26,8 +26,10 @@ def draw_figures(folder: str | Path) -> list[Path]:
     """
     results = open_results(folder)
     where = results.path / "figures"
-    where.mkdir(exist_ok=True)
     groups = groups_of(results)
+    if not groups:  # no point has a steady swarm
+        return []
+    where.mkdir(exist_ok=True)
     title = _title(groups)
     with mpl.rc_context():
         mpl.rcdefaults()  # a user's own style must not change the bytes

@@ -117,7 +117,15 @@ class CohortRun:
     def clear_sums(self) -> None:
         """Forget what was summed so far."""
         work = self.work
-        for sums in (work.histogram, work.lab_histogram, work.recoil, work.lag_sums, work.point_sums, work.counts, work.events):
+        for sums in (
+            work.histogram,
+            work.lab_histogram,
+            work.recoil,
+            work.lag_sums,
+            work.point_sums,
+            work.counts,
+            work.events,
+        ):
             sums[:] = 0
 
 
@@ -169,7 +177,7 @@ def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
 
 
 def _cold_recoil(plan: Plan, lower: np.ndarray, upper: np.ndarray) -> np.ndarray:
-    """Energy given to atoms at rest in elastic collisions, eV per electron and kernel time, summed: 2 m M/(m + M)^2 nu w^2.
+    """Energy given to atoms at rest in elastic collisions, summed over time: 2 m M/(m + M)^2 nu w^2.
 
     The sum over the histogram is exact for a frequency linear in speed but for w^2, taken at the ends of the cells.
     """
@@ -181,7 +189,9 @@ def _cold_recoil(plan: Plan, lower: np.ndarray, upper: np.ndarray) -> np.ndarray
     return result
 
 
-def elastic_loss(plan: Plan, curve: ProcessCurve, lower: np.ndarray, upper: np.ndarray, edges: np.ndarray) -> np.ndarray:
+def elastic_loss(
+    plan: Plan, curve: ProcessCurve, lower: np.ndarray, upper: np.ndarray, edges: np.ndarray
+) -> np.ndarray:
     """Contribution of each speed cell to the recoil of a cold gas."""
     ratio = plan.mixture.gases[curve.gas].mass_ratio
     factor = 2.0 * ratio / (1.0 + ratio) ** 2

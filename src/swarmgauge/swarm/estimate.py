@@ -10,8 +10,8 @@ import numpy as np
 class Estimate:
     """A computed quantity.
 
-    value, standard_error, unit : the estimate; the error is NaN where a process was never seen (value 0) and 0 where the
-        value is exact.
+    value, standard_error, unit : the estimate; the error is NaN where a process was never seen (value 0) and 0 where
+        the value is exact.
     samples : independent cohorts behind it.
     upper_bound : 95 % upper bound, only where a process was never seen; otherwise NaN.
     """

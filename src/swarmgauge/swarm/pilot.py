@@ -73,7 +73,7 @@ def _fly(plan: Plan) -> Pilot:
 
 
 def _stretch_error(window_means: np.ndarray) -> float:
-    """Standard error of the mean of windows; neighbours are correlated over some two windows (half a relaxation each)."""
+    """Standard error of the mean of windows, correlated over some two of them (half a relaxation time each)."""
     if len(window_means) < 2:
         return math.inf
     return math.sqrt(5.0 * float(window_means.var(ddof=1)) / len(window_means))

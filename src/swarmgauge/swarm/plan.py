@@ -86,12 +86,20 @@ class Plan:
     def with_windows(self, relaxation: int, measured: int) -> "Plan":
         """The same with a relaxation cut and a length; keeps what has been computed."""
         plan = replace(self, relaxation_windows=relaxation, measured_windows=measured)
-        plan.__dict__.update({k: v for k, v in self.__dict__.items() if k in ("curves", "passive_curves", "tables", "stream_key")})
+        plan.__dict__.update(
+            {k: v for k, v in self.__dict__.items() if k in ("curves", "passive_curves", "tables", "stream_key")}
+        )
         return plan
 
 
 def first_plan(
-    mixture: Mixture, field: Field, seed: int, two_term: TwoTerm, *, electrons: int | None = None, window_scale: float = 1.0
+    mixture: Mixture,
+    field: Field,
+    seed: int,
+    two_term: TwoTerm,
+    *,
+    electrons: int | None = None,
+    window_scale: float = 1.0,
 ) -> Plan:
     """A plan from the two-term solution; windows are still to be set by a pilot.
 

@@ -62,7 +62,7 @@ class Point:
 
     estimates : quantity name to Estimate, in the order of output. two_term : name to two-term value. targets : name to
     TargetStatus of the judged quantities. above_tables : process to share of time above its last tabulated energy.
-    warnings : sentences. status : "done", "target missed", "runaway", "extinct" or "interrupted". cohorts : number used.
+    warnings : sentences. status : "done", "target missed", "runaway", "extinct" or "interrupted". cohorts : how many.
     worst : judged quantity furthest from its target and its error over the target.
     relaxation : what was cut off each cohort and how that was decided.
     """
@@ -88,6 +88,8 @@ class Point:
         return iter(self.estimates)
 
     def __repr__(self) -> str:
-        lines = [f"Point({self.conditions.mixture.describe()}, {self.conditions.field.E_over_N_Td:g} Td, {self.status})"]
+        lines = [
+            f"Point({self.conditions.mixture.describe()}, {self.conditions.field.E_over_N_Td:g} Td, {self.status})"
+        ]
         lines += [f"  {name} = {estimate!r}" for name, estimate in self.estimates.items()]
         return "\n".join(lines)

@@ -9,7 +9,6 @@ import numpy as np
 
 from swarmgauge.gas import Mixture
 
-from .cohort import run_cohort
 from .estimate import Estimate, jackknife
 from .field import Field
 from .pilot import Pilot, fly_pilot
@@ -119,7 +118,7 @@ class PointRun:
 
     @property
     def worst(self) -> tuple[str, float]:
-        """The judged quantity furthest from its target, and its error over the target; ("", nan) before any is known."""
+        """The judged quantity furthest from its target, and its error over the target; ("", nan) at first."""
         if self.cohorts < 2 or self.pilot is None or self.pilot.plan is None:
             return "", math.nan
         return self.result().worst
@@ -223,7 +222,7 @@ class PointRun:
             lines.append(f"time spent above the end of a table: {shown}{more}")
         if 0 < self.cohorts < FIRST_COHORTS:
             lines.append(
-                f"only {self.cohorts} of at least {FIRST_COHORTS} cohorts: errors are rough; give more minutes per point"
+                f"only {self.cohorts} of at least {FIRST_COHORTS} cohorts: errors are rough; allow more minutes"
             )
         return tuple(lines)
 
@@ -231,7 +230,9 @@ class PointRun:
         """A point with no estimates: no steady swarm, or not yet any cohorts."""
         outcome = self.pilot.outcome if self.pilot else ""
         status = outcome if outcome in ("runaway", "extinct") else "interrupted"
-        note = (f"{outcome}: {self.pilot.note}; no coefficients are given",) if self.pilot and outcome != "steady" else ()
+        note = (
+            (f"{outcome}: {self.pilot.note}; no coefficients are given",) if self.pilot and outcome != "steady" else ()
+        )
         empty = np.zeros(0)
         assert self._two_term is not None
         return Point(
@@ -254,7 +255,9 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
     names: list[str] = list(reducer.quantities(rows[:1]))
 
     def everything(sums: np.ndarray) -> np.ndarray:
-        return np.concatenate([np.stack(list(reducer.quantities(sums).values()), axis=1), *reducer.distribution(sums)], axis=1)
+        return np.concatenate(
+            [np.stack(list(reducer.quantities(sums).values()), axis=1), *reducer.distribution(sums)], axis=1
+        )
 
     values, errors = jackknife(everything, rows)
     known = dict(zip(names, values, strict=False))

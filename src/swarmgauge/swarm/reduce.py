@@ -183,7 +183,7 @@ class Reducer:
         return result
 
     def upper_bounds(self, total_time: float, names: dict[str, np.ndarray]) -> dict[str, float]:
-        """95 % upper bounds of what was never seen: fewer than 3 events in the total time (kernel units), name to bound."""
+        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the total time (kernel units)."""
         mixture = self.plan.mixture
         per_time = UNSEEN_EVENTS / total_time * RATE_UNIT
         bounds: dict[str, float] = {}

@@ -28,8 +28,8 @@ def drive(
 ) -> None:
     """Compute all cohorts that the runs want, in their order, keeping `workers` + 1 pieces of work under way.
 
-    on_progress(run) after every cohort, on_finished(run) once for every run, also for those finished before. max_minutes :
-    wall clock for all; what is unfinished then is finished with what it has, or left if it has too little.
+    on_progress(run) after every cohort, on_finished(run) once for every run, also for those finished before.
+    max_minutes : wall clock for all; what is unfinished then is finished with what it has, or left if it has too little.
     An exception, Ctrl-C too, cancels what is queued and is raised again; finished runs were handed over before.
     """
     end = None if max_minutes is None else time.monotonic() + 60.0 * max_minutes
@@ -78,7 +78,7 @@ def _submit(runs: Sequence[PointRun], executor: Executor, under_way: dict, most:
         if run.finished:
             continue
         mine = {index for other, index in under_way.values() if other is run}
-        if run.pilot is None:
+        if run.pilot is None or run.pilot.plan is None:
             if PREPARE not in mine:
                 run.start_clock()
                 under_way[executor.submit(prepare, run.mixture, run.field, run.seed)] = (run, PREPARE)
@@ -109,9 +109,9 @@ def simulate(
 ) -> Point:
     """Swarm coefficients and energy distribution of a mixture at one field.
 
-    accuracy : quantity name (with *) to a relative standard error, or to {rel, abs, from_Td, to_Td}; the defaults are in
-    `targets`. seed : of the random streams; equal seeds give equal bits for any number of workers. workers : threads, by
-    default the cores of this process. max_minutes : wall clock; what it stops short is marked "target missed".
+    accuracy : quantity name (with *) to a relative standard error, or to {rel, abs, from_Td, to_Td}; the defaults are
+    in `targets`. seed : of the random streams; equal seeds give equal bits for any number of workers. workers :
+    threads, by default the cores of this process. max_minutes : wall clock; what it stops short is marked "target missed".
     Raises InputError for impossible conditions or targets.
     """
     run = PointRun(mixture, field, seed=seed, accuracy=accuracy, max_minutes=max_minutes)

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from swarmgauge.gas import Gas, Mixture, Process
+from swarmgauge.gas.constants import BOLTZMANN, E_CHARGE
 from swarmgauge.kernel.lookup import (
     ATTACHMENT,
     ENERGY_CELLS,
@@ -73,7 +74,7 @@ class ProcessCurve:
 
 
 def process_threshold(gas: Gas, process: Process) -> float:
-    """Smallest squared relative speed (eV) at which a process can happen: threshold x (m + M) / M; 0 if nothing is lost."""
+    """Least squared relative speed (eV) at which a process can happen: threshold x (m + M) / M; 0 if nothing is lost."""
     if process.kind in ("excitation", "ionization"):
         return process.threshold_eV * (1.0 + gas.mass_ratio)
     return 0.0
@@ -103,12 +104,12 @@ def frequency_on_cells(process: Process, threshold: float, scale: float) -> tupl
         value = speed * process.cross_section(speed * speed) * (scale / UNIT_CROSS_SECTION_M2)
         mean += weight * half * value / width
         moment += weight * half * value / width * ((speed - edges[cell]) / width)
-    mean = np.bincount(cell, weights=mean, minlength=SPEED_CELLS)
-    moment = np.bincount(cell, weights=moment, minlength=SPEED_CELLS)
-    high = 6.0 * moment - 2.0 * mean
-    low = 2.0 * mean - high
-    high = np.where(low < 0.0, 2.0 * mean, np.where(high < 0.0, 0.0, high))
-    low = np.maximum(2.0 * mean - high, 0.0)
+    integral = np.bincount(cell, weights=mean, minlength=SPEED_CELLS)
+    first_moment = np.bincount(cell, weights=moment, minlength=SPEED_CELLS)
+    high = 6.0 * first_moment - 2.0 * integral
+    low = 2.0 * integral - high
+    high = np.where(low < 0.0, 2.0 * integral, np.where(high < 0.0, 0.0, high))
+    low = np.maximum(2.0 * integral - high, 0.0)
     return low, high
 
 
@@ -124,7 +125,9 @@ def process_curves(mixture: Mixture, *, passive: bool) -> list[ProcessCurve]:
     return curves
 
 
-def build_tables(mixture: Mixture, curves: list[ProcessCurve], acceleration: float, window_scale: float = 1.0) -> Tables:
+def build_tables(
+    mixture: Mixture, curves: list[ProcessCurve], acceleration: float, window_scale: float = 1.0
+) -> Tables:
     """The kernel's tables for the acting `curves` of a mixture.
 
     acceleration : kernel units, >= 0. window_scale : factor on the speed windows of the majorant (results do not depend
@@ -169,8 +172,8 @@ def build_tables(mixture: Mixture, curves: list[ProcessCurve], acceleration: flo
 
 
 def neutral_speeds(mixture: Mixture) -> np.ndarray:
-    """Standard deviation of one velocity component of each gas, sqrt(eV) of the electron: sqrt(kT m / (2 M)); shape (G,)."""
-    thermal_energy_eV = mixture.temperature_K * 8.617333262e-5
+    """Standard deviation of a velocity component of each gas, sqrt(eV) of the electron: sqrt(kT m / (2 M)); (G,)."""
+    thermal_energy_eV = mixture.temperature_K * BOLTZMANN / E_CHARGE
     return np.sqrt([0.5 * thermal_energy_eV * gas.mass_ratio for gas in mixture.gases])
 
 
@@ -215,7 +218,9 @@ def majorants(
         bound = np.empty_like(best)
         for row, width in enumerate(sigma):
             reach = window + NEUTRAL_REACH * width
-            first = np.clip(np.searchsorted(edges, np.maximum(slowest - reach, 0.0), side="right") - 1, 0, SPEED_CELLS - 1)
+            first = np.clip(
+                np.searchsorted(edges, np.maximum(slowest - reach, 0.0), side="right") - 1, 0, SPEED_CELLS - 1
+            )
             last = np.clip(np.searchsorted(edges, fastest + reach, side="right") - 1, first, SPEED_CELLS - 1)
             bound[row] = _largest([level[row : row + 1] for level in levels], first, last)[0]
         cumulated = np.cumsum(bound * (1.0 + 1e-12), axis=0)

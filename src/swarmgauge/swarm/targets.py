@@ -82,7 +82,9 @@ def _target(name: str, wanted: Any) -> Target:
     if target.rel == 0.0 and target.abs == 0.0:
         raise InputError(f'accuracy "{name}": neither rel nor abs is above 0. Give at least one of them.')
     if target.from_Td > target.to_Td:
-        raise InputError(f'accuracy "{name}": from_Td = {target.from_Td:g} is above to_Td = {target.to_Td:g}. Swap them.')
+        raise InputError(
+            f'accuracy "{name}": from_Td = {target.from_Td:g} is above to_Td = {target.to_Td:g}. Swap them.'
+        )
     return target
 
 
