@@ -29,7 +29,7 @@ def drive(
     """Compute all cohorts that the runs want, in their order, keeping `workers` + 1 pieces of work under way.
 
     on_progress(run) after every cohort, on_finished(run) once for every run, also for those finished before.
-    max_minutes : wall clock for all; what is unfinished then is finished with what it has, or left if it has too little.
+    max_minutes : wall clock for all; what is unfinished then is finished with what it has, if that is enough.
     An exception, Ctrl-C too, cancels what is queued and is raised again; finished runs were handed over before.
     """
     end = None if max_minutes is None else time.monotonic() + 60.0 * max_minutes
@@ -111,7 +111,7 @@ def simulate(
 
     accuracy : quantity name (with *) to a relative standard error, or to {rel, abs, from_Td, to_Td}; the defaults are
     in `targets`. seed : of the random streams; equal seeds give equal bits for any number of workers. workers :
-    threads, by default the cores of this process. max_minutes : wall clock; what it stops short is marked "target missed".
+    threads, by default the cores of this process. max_minutes : wall clock; what it stops short is "target missed".
     Raises InputError for impossible conditions or targets.
     """
     run = PointRun(mixture, field, seed=seed, accuracy=accuracy, max_minutes=max_minutes)

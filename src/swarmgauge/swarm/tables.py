@@ -74,7 +74,7 @@ class ProcessCurve:
 
 
 def process_threshold(gas: Gas, process: Process) -> float:
-    """Least squared relative speed (eV) at which a process can happen: threshold x (m + M) / M; 0 if nothing is lost."""
+    """Least squared relative speed, eV, at which a process can happen: threshold x (m + M) / M, or 0."""
     if process.kind in ("excitation", "ionization"):
         return process.threshold_eV * (1.0 + gas.mass_ratio)
     return 0.0
