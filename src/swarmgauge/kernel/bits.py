@@ -9,6 +9,7 @@ With NUMBA_DISABLE_JIT=1 the plain twins below take their place.
 
 import numpy as np
 from llvmlite import ir
+from llvmlite.binding import get_host_cpu_features
 from numba import config, types
 from numba.extending import intrinsic
 
@@ -138,3 +139,10 @@ else:
             return context.get_dummy_value()
 
         return types.void(), codegen
+
+
+def vector_width() -> int:
+    """Doubles in one vector of this processor as LLVM may use them: 8 (AVX-512), 4 (AVX) or 2 (SSE2)."""
+    features = config.CPU_FEATURES or get_host_cpu_features().flatten()  # type: ignore[attr-defined]
+    on = set(features.split(","))
+    return 8 if "+avx512f" in on else 4 if "+avx" in on else 2
