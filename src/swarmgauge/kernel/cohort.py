@@ -13,7 +13,7 @@ from .collide import collide, retire, swap_electrons
 from .flight import fly
 from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, score_window_end
 from .lanes import ELECTRON_FIELDS, LEFT, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, WEIGHT, X, Y, Z
-from .lookup import ATTACHMENT, IONIZATION, LAB_CELLS, SPEED_CELLS
+from .lookup import LAB_CELLS, SPEED_CELLS
 from .record import list_ended, list_rare, record
 from .streams import next_word, one_to_two
 
@@ -108,32 +108,6 @@ def add_lane_sums(rows, lanes, series, window):
     series[window, SERIES_Z] = z
 
 
-@njit(forceinline=True)
-def rare_pass(active, alive, tables, history, work, window_time, measuring, lanes, lags):
-    """All non-elastic events of one step. Returns the number of electrons alive, or -1 if no lane is spare.
-
-    A child starts its path at its birth, an attached electron ends its own: the flux sums are settled here.
-    """
-    rows = work.rows
-    for at in range(list_rare(active, rows, work.rare, lanes)):
-        if alive >= lanes:
-            return -1
-        lane = work.rare[at]
-        elapsed = window_time - load(rows, lane + LEFT * lanes)
-        process = collide(lane, alive, tables, rows, lanes)
-        if process < 0:
-            continue
-        if measuring:
-            work.events[process] += 1
-        kind = tables.kind[process]
-        if kind == IONIZATION:
-            score_path(alive, -1.0, elapsed, rows, history, work.lag_sums, work.point_sums, lanes, lags)
-            alive += 1
-        elif kind == ATTACHMENT:
-            score_path(lane, 1.0, elapsed, rows, history, work.lag_sums, work.point_sums, lanes, lags)
-    return alive
-
-
 @njit(inline="always")
 def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
@@ -142,7 +116,8 @@ def step(active, alive, tables, history, work, window_time, field, measuring, la
     if measuring:
         record(active, rows, work.histogram, work.lab_histogram, work.recoil, work.counts, lanes, thermal)
     born_from = alive
-    alive = rare_pass(active, alive, tables, history, work, window_time, measuring, lanes, lags)
+    rare = list_rare(active, rows, work.rare, lanes)
+    alive = collide(rare, alive, tables, history, work, window_time, measuring, lanes, lags)
     ended = list_ended(active, rows, work.ended, lanes)
     for child in range(born_from, alive):
         swap_electrons(rows, child, active, lanes)
@@ -155,11 +130,11 @@ def step(active, alive, tables, history, work, window_time, field, measuring, la
 @njit(forceinline=True)
 def end_window(alive, tables, history, extended, work, window_time, lanes, lags):
     """Settle all paths, lengthen the histories and take the sums over the population at the end of a window."""
-    rows = work.rows
+    rows, lag_sums, point_sums, net_frequency = work.rows, work.lag_sums, work.point_sums, tables.net_frequency
     for lane in range(alive):
-        score_path(lane, 1.0, window_time, rows, history, work.lag_sums, work.point_sums, lanes, lags)
+        score_path(lane, 1.0, window_time, rows, history, lag_sums, point_sums, lanes, lags)
         extend_history(lane, rows, history, extended, lanes, lags)
-        score_window_end(lane, tables, rows, extended, work.lag_sums, work.point_sums, lanes, lags)
+        score_window_end(lane, net_frequency, rows, extended, lag_sums, point_sums, lanes, lags)
 
 
 @njit(inline="always")

@@ -9,6 +9,7 @@ from numba import njit
 
 from .bits import load, load_int, load_table, store
 from .flight import isotropic_direction, scattered
+from .history import score_path
 from .lanes import ELECTRON_FIELDS, FRACTION, GAS_CELL, LEFT, NX, NY, NZ, REMAINDER, UX, UY, UZ, VX, VY, VZ
 from .lookup import ATTACHMENT, IONIZATION, SHARE_EQUAL, SHARE_UNIFORM, SPEED_CELLS
 from .streams import next_word, one_to_two
@@ -31,18 +32,17 @@ def copy_electron(rows, source, target, lanes):
 
 
 @njit(forceinline=True)
-def select_process(tables, gas_cell, fraction, remainder, gas, speed_cell):
-    """Index of the process in which `remainder` falls, processes laid end to end; -1 if rounding leaves none."""
-    first = load_table(tables.first_process, gas)
-    last = load_table(tables.first_process, gas + 1)
-    count = tables.kind.size
-    for process in range(first, last):
-        at = 2 * (speed_cell * count + process)
-        low = load_table(tables.process, at)
-        remainder -= low + fraction * (load_table(tables.process, at + 1) - low)
+def select_process(process, at, first, last, fraction, remainder):
+    """Index, first .. last - 1, of the process in which `remainder` falls, processes laid end to end; -1 if none.
+
+    process : frequencies at both ends of every cell; at : index of the row of the cell; fraction : position in it.
+    """
+    for index in range(first, last):
+        low = load_table(process, at + 2 * index)
+        remainder -= low + fraction * (load_table(process, at + 2 * index + 1) - low)
         if remainder < 0.0:
-            return process
-    return -1
+            return index
+    return -1  # by rounding only
 
 
 @njit(forceinline=True)
@@ -56,70 +56,84 @@ def shared_energy(law, fixed_fraction, available, rows, lane, lanes):
 
 
 @njit(forceinline=True)
-def collide(lane, alive, tables, rows, lanes):
-    """One non-elastic event of a lane. Returns the process index, or -1 if none.
+def leave(lane, target, speed, nx, ny, nz, electron_part, neutral_part, rows, lanes):
+    """Give the electron in `target` the velocity after a collision of that in `lane`, `speed` the relative one."""
+    x, y, z = scattered(
+        load(rows, lane + VX * lanes), load(rows, lane + VY * lanes), load(rows, lane + VZ * lanes),
+        load(rows, lane + UX * lanes), load(rows, lane + UY * lanes), load(rows, lane + UZ * lanes),
+        speed, nx, ny, nz, electron_part, neutral_part,
+    )  # fmt: skip
+    store(rows, target + VX * lanes, x)
+    store(rows, target + VY * lanes, y)
+    store(rows, target + VZ * lanes, z)
+
+
+@njit(forceinline=True)
+def relative_energy(lane, rows, lanes):
+    """Squared relative speed of the electron and the neutral of its collision."""
+    gx = load(rows, lane + VX * lanes) - load(rows, lane + UX * lanes)
+    gy = load(rows, lane + VY * lanes) - load(rows, lane + UY * lanes)
+    gz = load(rows, lane + VZ * lanes) - load(rows, lane + UZ * lanes)
+    return gx * gx + gy * gy + gz * gz
+
+
+@njit(forceinline=True)
+def collide(count, alive, tables, history, work, window_time, measuring, lanes, lags):
+    """The non-elastic events of one step, for the first `count` lanes of `work.rare`.
 
     Excitation and ionization: two-body kinematics with g'^2 = g^2 - loss, loss = threshold x (m + M) / M, so that the
     energy in the centre of mass falls by exactly the threshold. In ionization the two electrons share g'^2 and leave
     isotropically and independently about the centre of mass; the momentum of the ion is left out, an error of order
-    m/M. The ejected electron is written to lane `alive` (which must be spare). Attachment marks the electron by a
-    negative time left.
+    m/M. The ejected electron takes a spare lane, and its path starts there (see `history`). Attachment marks the
+    electron by a negative time left and ends its path.
+    Returns the number of electrons alive, or -1 if no lane was spare.
     """
-    gas_cell = load_int(rows, lane + GAS_CELL * lanes)
-    gas = gas_cell // SPEED_CELLS
-    process = select_process(
-        tables,
-        gas_cell,
-        load(rows, lane + FRACTION * lanes),
-        load(rows, lane + REMAINDER * lanes),
-        gas,
-        gas_cell - gas * SPEED_CELLS,
-    )
-    if process < 0:
-        return -1
-    kind = load_table(tables.kind, process)
-    if kind == ATTACHMENT:
-        store(rows, lane + LEFT * lanes, -1.0)
-        return process
-    vx = load(rows, lane + VX * lanes)
-    vy = load(rows, lane + VY * lanes)
-    vz = load(rows, lane + VZ * lanes)
-    ux = load(rows, lane + UX * lanes)
-    uy = load(rows, lane + UY * lanes)
-    uz = load(rows, lane + UZ * lanes)
-    gx, gy, gz = vx - ux, vy - uy, vz - uz
-    electron_part = load_table(tables.electron_part, gas)
-    neutral_part = load_table(tables.neutral_part, gas)
-    available = gx * gx + gy * gy + gz * gz - load_table(tables.loss, process)
-    available = available if available > 0.0 else 0.0  # rounding at the threshold only: cells start above it
-    if kind == IONIZATION:
-        ejected = shared_energy(
-            load_table(tables.sharing, process),
-            load_table(tables.sharing_fraction, process),
-            available,
-            rows,
-            lane,
-            lanes,
+    # Arrays are taken out of their tuples before the loop: numba counts references at every such access.
+    rows, rare, events = work.rows, work.rare, work.events
+    lag_sums, point_sums = work.lag_sums, work.point_sums
+    process_table, first_process, kind, loss = tables.process, tables.first_process, tables.kind, tables.loss
+    sharing, sharing_fraction = tables.sharing, tables.sharing_fraction
+    electron_parts, neutral_parts = tables.electron_part, tables.neutral_part
+    processes = kind.size
+    for at in range(count):
+        if alive >= lanes:
+            return -1
+        lane = rare[at]
+        cell = load_int(rows, lane + GAS_CELL * lanes)
+        gas = cell // SPEED_CELLS
+        process = select_process(
+            process_table,
+            2 * processes * (cell - gas * SPEED_CELLS),
+            first_process[gas],
+            first_process[gas + 1],
+            load(rows, lane + FRACTION * lanes),
+            load(rows, lane + REMAINDER * lanes),
         )
-        available -= ejected
-        copy_electron(rows, lane, alive, lanes)
-        nx, ny, nz = isotropic_direction(next_word(rows, lane, lanes))
-        x, y, z = scattered(
-            vx, vy, vz, ux, uy, uz, math.sqrt(ejected), nx, ny, nz, electron_part, neutral_part
-        )  # fmt: skip
-        store(rows, alive + VX * lanes, x)
-        store(rows, alive + VY * lanes, y)
-        store(rows, alive + VZ * lanes, z)
-    nx = load(rows, lane + NX * lanes)
-    ny = load(rows, lane + NY * lanes)
-    nz = load(rows, lane + NZ * lanes)
-    x, y, z = scattered(
-        vx, vy, vz, ux, uy, uz, math.sqrt(available), nx, ny, nz, electron_part, neutral_part
-    )  # fmt: skip
-    store(rows, lane + VX * lanes, x)
-    store(rows, lane + VY * lanes, y)
-    store(rows, lane + VZ * lanes, z)
-    return process
+        if process < 0:
+            continue
+        if measuring:
+            events[process] += 1
+        elapsed = window_time - load(rows, lane + LEFT * lanes)
+        if kind[process] == ATTACHMENT:
+            score_path(lane, 1.0, elapsed, rows, history, lag_sums, point_sums, lanes, lags)
+            store(rows, lane + LEFT * lanes, -1.0)
+            continue
+        electron_part, neutral_part = electron_parts[gas], neutral_parts[gas]
+        available = relative_energy(lane, rows, lanes) - loss[process]
+        available = available if available > 0.0 else 0.0  # rounding at the threshold only: cells start above it
+        if kind[process] == IONIZATION:
+            ejected = shared_energy(sharing[process], sharing_fraction[process], available, rows, lane, lanes)
+            available -= ejected
+            copy_electron(rows, lane, alive, lanes)
+            nx, ny, nz = isotropic_direction(next_word(rows, lane, lanes))
+            leave(lane, alive, math.sqrt(ejected), nx, ny, nz, electron_part, neutral_part, rows, lanes)
+            score_path(alive, -1.0, elapsed, rows, history, lag_sums, point_sums, lanes, lags)
+            alive += 1
+        nx = load(rows, lane + NX * lanes)
+        ny = load(rows, lane + NY * lanes)
+        nz = load(rows, lane + NZ * lanes)
+        leave(lane, lane, math.sqrt(available), nx, ny, nz, electron_part, neutral_part, rows, lanes)
+    return alive
 
 
 @njit(forceinline=True)

@@ -73,15 +73,15 @@ def extend_history(lane, rows, history, extended, lanes, lags):
 
 
 @njit(forceinline=True)
-def score_window_end(lane, tables, rows, extended, lag_sums, point_sums, lanes, lags):
+def score_window_end(lane, net_frequency, rows, extended, lag_sums, point_sums, lanes, lags):
     """Add the R sums of the electron in `lane`, whose history has just been extended."""
     weight = load(rows, lane + WEIGHT * lanes)
     vx = load(rows, lane + VX * lanes)
     vy = load(rows, lane + VY * lanes)
     vz = load(rows, lane + VZ * lanes)
     cell, fraction = speed_cell((vx * vx + vy * vy + vz * vz) ** 0.5)
-    low = load_table(tables.net_frequency, 2 * cell)
-    rate = low + fraction * (load_table(tables.net_frequency, 2 * cell + 1) - low)
+    low = load_table(net_frequency, 2 * cell)
+    rate = low + fraction * (load_table(net_frequency, 2 * cell + 1) - low)
     point_sums[END_WEIGHT] += weight
     point_sums[END_R] += weight * rate
     row = 3 * lags * lane

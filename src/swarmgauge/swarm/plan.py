@@ -25,6 +25,7 @@ ELECTRONS_OF_LONG_MEMORY = 256
 LONG_MEMORY_FLIGHTS = 1e5  # collisions of one electron within the memory, above which cohorts are small
 MEMORY = 6.0  # displacement histories reach back this many relaxation times: what is cut off is exp(-6) of the tail
 WINDOWS_PER_RELAXATION = 2.0
+LEAST_FLIGHTS_PER_WINDOW = 40.0  # below these the work at the end of a window would outweigh the flights
 LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by attachment
 MOST_LAGS = 80
 LEAST_FLIGHTS = 3e6  # flights measured in a cohort
@@ -103,19 +104,19 @@ def first_plan(
 ) -> Plan:
     """A plan from the two-term solution; windows are still to be set by a pilot.
 
-    A window is half a relaxation time, or less where the population would change by more than 15 % in it. Numbers that
-    come from linear algebra are rounded (window to 2 digits, start distribution to 24 bits), so that the last bits,
-    which depend on the processor, do not reach the swarm.
+    A window is half a relaxation time or 40 collisions, whichever is longer, but no more than what changes the
+    population by 15 %. Numbers that come from linear algebra are rounded (window to 2 digits, start distribution to 24
+    bits), so that the last bits, which depend on the processor, do not reach the swarm.
     """
     values = two_term.values
     collisions = values["collision_frequency_over_N"] / RATE_UNIT
     relaxation = min(two_term.relaxation_frequency_over_N / RATE_UNIT, collisions)
     change = max(abs(values.get(f"{kind}_frequency_over_N", 0.0)) for kind in ("ionization", "attachment")) / RATE_UNIT
-    window = 1.0 / (WINDOWS_PER_RELAXATION * relaxation)
+    window = max(1.0 / (WINDOWS_PER_RELAXATION * relaxation), LEAST_FLIGHTS_PER_WINDOW / collisions)
     if change > 0.0:
         window = min(window, LARGEST_CHANGE / change)
     window = float(f"{window:.2g}")
-    lags = min(max(math.ceil(MEMORY / (relaxation * window) - 0.5), 4), MOST_LAGS)
+    lags = min(max(math.ceil(MEMORY / (relaxation * window) - 0.5), 2), MOST_LAGS)
     if electrons is None:
         long_memory = MEMORY * collisions / relaxation > LONG_MEMORY_FLIGHTS
         electrons = ELECTRONS_OF_LONG_MEMORY if long_memory else ELECTRONS
