@@ -87,7 +87,8 @@ def _coefficient_rows(key: str, point: Point) -> Iterator[list[Any]]:
         judged = [None, None] if status is None else [status.target, "yes" if status.reached else "no"]
         value = [float(estimate.value), float(estimate.standard_error), estimate.unit, estimate.samples]
         bound = None if math.isnan(estimate.upper_bound) else float(estimate.upper_bound)
-        two_term = float(point.two_term[name]) if name in point.two_term else None
+        # Six digits: the last bits of linear algebra differ between processors, those of the file must not.
+        two_term = float(f"{point.two_term[name]:.6g}") if name in point.two_term else None
         yield [*start, name, *value, bound, two_term, None, *judged]
 
 

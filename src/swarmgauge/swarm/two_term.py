@@ -224,6 +224,7 @@ def _power_balance(balance: Balance, f: np.ndarray, per_target: np.ndarray, drif
     losses["loss_fraction:population_change"] = growth_loss / heating_eV
     return {
         "field_heating_over_N": E_CHARGE * heating_eV if drift else 0.0,
-        "energy_balance_residual": 1.0 - math.fsum(losses.values()),
+        # Bits of linear algebra, below 1e-12, differ between processors; + 0.0 turns -0.0 into 0.0.
+        "energy_balance_residual": round(1.0 - math.fsum(losses.values()), 8) + 0.0,
         **losses,
     }
