@@ -82,6 +82,8 @@ class StandInRun:
                 for name, (target, excess) in self.judged.items()
             },
             warnings=(),
+            relaxation="",
+            above_tables={},
             status="done" if self.worst[1] <= 1 else "target missed",
             cohorts=self.cohorts,
             worst=self.worst,

@@ -103,5 +103,7 @@ def _point(key: str, point: Point) -> dict[str, Any]:
         "cohorts": point.cohorts,
         "wall_seconds": round(point.wall_seconds, 3),
         "cpu_seconds": round(point.cpu_seconds, 3),
+        "relaxation": point.relaxation,
+        "share_of_time_above_table_end": {name: float(f"{share:.3g}") for name, share in point.above_tables.items()},
         "warnings": list(point.warnings),
     }

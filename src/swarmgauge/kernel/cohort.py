@@ -1,14 +1,13 @@
 """One cohort: windows of free steps, then the comb that brings the population back to its size."""
 
-import hashlib
 from functools import cache
-from pathlib import Path
 from typing import NamedTuple
 
 import numpy as np
-from numba import config, njit
+from numba import njit
 
 from .bits import load, prefer_wide_vectors, store
+from .build import compiled, kernel_digest
 from .collide import collide, retire, swap_electrons
 from .flight import fly
 from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, score_window_end
@@ -174,21 +173,8 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
 
 
 @cache
-def kernel_digest() -> str:
-    """SHA-256 of the sources of this package, hexadecimal: the kernel's version."""
-    digest = hashlib.sha256()
-    for path in sorted(Path(__file__).parent.glob("*.py")):
-        digest.update(path.read_bytes())
-    return digest.hexdigest()
-
-
-@cache
 def compiled_windows(lanes: int, gases: int, thermal: bool):
-    """The entry kernel for a number of lanes and gases, cold or thermal; arguments of `windows` less the last three.
-
-    numba does not notice edits in other files: the digest in the closure makes it compile anew after any edit of this
-    package. Where no folder can be written, nothing is cached.
-    """
+    """The entry kernel for a number of lanes and gases, cold or thermal; arguments of `windows` less the last three."""
     digest = kernel_digest()
 
     def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
@@ -198,9 +184,4 @@ def compiled_windows(lanes: int, gases: int, thermal: bool):
             tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal
         )
 
-    if config.DISABLE_JIT:  # type: ignore[attr-defined]
-        return run_windows
-    try:
-        return njit(cache=True, nogil=True, error_model="numpy")(run_windows)
-    except RuntimeError:
-        return njit(nogil=True, error_model="numpy")(run_windows)
+    return compiled(run_windows)

@@ -1,18 +1,20 @@
 """Putting the electrons of a cohort into their lanes at the start."""
 
 import math
+from functools import cache
 
 import numpy as np
 from numba import njit
 
 from .bits import store
+from .build import compiled, kernel_digest
 from .flight import isotropic_direction
 from .lanes import LEFT, ROWS, SLOT, SPARE_STREAM, STREAM, VX, VY, VZ, WEIGHT
 from .streams import next_word, one_to_two, seeded_streams
 
 
-@njit(error_model="numpy")
-def _launch(rows, size, lanes, energy_edges, cumulated):
+@njit(forceinline=True)
+def place(rows, size, lanes, energy_edges, cumulated):
     """Electrons with energies drawn from a histogram, isotropic directions, weight 1.
 
     rows : (ROWS * lanes,), changed; energy_edges : (n + 1,), eV; cumulated : (n + 1,), from 0 to 1, share of electrons
@@ -33,10 +35,22 @@ def _launch(rows, size, lanes, energy_edges, cumulated):
         store(rows, lane + SLOT * lanes, float(lane))
 
 
+@cache
+def compiled_place():
+    """The entry kernel of `place`."""
+    digest = kernel_digest()
+
+    def run_place(rows, size, lanes, energy_edges, cumulated):
+        digest  # noqa: B018 - part of the cache key
+        place(rows, size, lanes, energy_edges, cumulated)
+
+    return compiled(run_place)
+
+
 def launch(rows, start, size, lanes, energy_edges, cumulated):
-    """Seed all streams from the SplitMix64 state `start` and place `size` electrons; see `_launch`."""
+    """Seed all streams from the SplitMix64 state `start` and place `size` electrons; see `place`."""
     states = seeded_streams(start, 2 * lanes)
     words = rows.view(np.uint64).reshape(ROWS, lanes)
     words[STREAM : STREAM + 4] = states[:, :lanes]
     words[SPARE_STREAM : SPARE_STREAM + 4] = states[:, lanes:]
-    _launch(rows, size, lanes, energy_edges, cumulated)
+    compiled_place()(rows, size, lanes, energy_edges, cumulated)

@@ -10,6 +10,7 @@ from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
 from .cohort import CohortFailure, CohortRun
 from .plan import LEAST_FLIGHTS, Plan
+from .two_term import TwoTerm
 
 PILOT_INDEX = -1  # its stream belongs to no cohort of the result
 MOST_STRETCHES = 12
@@ -25,12 +26,14 @@ class Pilot:
 
     plan : with its windows set, or None where there is no steady swarm; outcome : "steady", "runaway" or "extinct".
     stretch_energies : (n,), eV, mean energy of successive stretches of one memory each. note : how the cut was decided.
+    two_term : the solution that the plan was made from, where it is at hand.
     """
 
     plan: Plan | None
     outcome: str
     stretch_energies: np.ndarray
     note: str
+    two_term: TwoTerm | None = None
 
 
 def fly_pilot(plan: Plan) -> Pilot:

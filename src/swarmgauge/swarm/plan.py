@@ -11,7 +11,7 @@ import numpy as np
 
 from swarmgauge.gas import Mixture
 from swarmgauge.gas.constants import SPEED_1_EV
-from swarmgauge.kernel.cohort import kernel_digest
+from swarmgauge.kernel.build import kernel_digest
 from swarmgauge.kernel.lanes import lane_count
 from swarmgauge.kernel.lookup import Tables
 
@@ -28,7 +28,7 @@ WINDOWS_PER_RELAXATION = 2.0
 LEAST_FLIGHTS_PER_WINDOW = 40.0  # below these the work at the end of a window would outweigh the flights
 LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by attachment
 MOST_LAGS = 80
-LEAST_FLIGHTS = 3e6  # flights measured in a cohort
+LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
 _SOURCES = ("plan.py", "tables.py", "cohort.py", "pilot.py")
 

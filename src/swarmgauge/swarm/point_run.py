@@ -3,6 +3,7 @@
 import math
 import time
 from collections.abc import Mapping
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -22,11 +23,13 @@ from .two_term import TwoTerm
 FIRST_COHORTS = 20
 FEWEST_COHORTS = 4  # below these the clock cannot stop a point: no error could be stated
 LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on unmentioned
+SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, one that has not was cut
 
 
 def prepare(mixture: Mixture, field: Field, seed: int) -> Pilot:
     """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor."""
-    return fly_pilot(first_plan(mixture, field, seed, solved(mixture, field)))
+    two_term = solved(mixture, field)
+    return replace(fly_pilot(first_plan(mixture, field, seed, two_term)), two_term=two_term)
 
 
 class PointRun:
@@ -78,6 +81,7 @@ class PointRun:
     def set_pilot(self, pilot: Pilot) -> None:
         """Take the pilot's answer; without a steady swarm the point is finished."""
         self.pilot = pilot
+        self._two_term = pilot.two_term
         if pilot.plan is None:
             self._finish()
 
@@ -215,7 +219,7 @@ class PointRun:
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
         lines = []
-        noted = sorted(((s, n) for n, s in above.items() if s > LARGEST_TABLE_SHARE), reverse=True)
+        noted = sorted(((s, n) for n, s in above.items() if s > LARGEST_TABLE_SHARE and self._is_cut(n)), reverse=True)
         if noted:
             shown = ", ".join(f"{name} {100 * share:.2g} %" for share, name in noted[:3])
             more = f" and {len(noted) - 3} more" if len(noted) > 3 else ""
@@ -225,6 +229,13 @@ class PointRun:
                 f"only {self.cohorts} of at least {FIRST_COHORTS} cohorts: errors are rough; allow more minutes"
             )
         return tuple(lines)
+
+    def _is_cut(self, name: str) -> bool:
+        """Whether the table of a process, <set>/<process>, ends while its cross section is still large."""
+        gas = next(gas for gas in self.mixture.gases if name.startswith(f"{gas.name}/"))
+        process = gas.process(name.removeprefix(f"{gas.name}/"))
+        values = process.cross_section(process.breakpoints_eV[process.breakpoints_eV <= process.end_eV])
+        return bool(values[-1] > SMALL_END * values.max())
 
     def _without_swarm(self) -> Point:
         """A point with no estimates: no steady swarm, or not yet any cohorts."""
