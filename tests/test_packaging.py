@@ -100,7 +100,7 @@ def test_a_run_in_an_empty_folder(installed, tmp_path):
         assert (results / name).stat().st_size > 0
     with open(results / "coefficients.csv", encoding="utf-8", newline="") as file:
         values = {row["quantity"]: row for row in csv.DictReader(file)}
-    # K. F. Ness and R. E. Robson, Phys. Rev. A 34, 2185 (1986), ramp model at 12 Td: 6.838e4 m/s to 0.4 % (from memory).
+    # K. F. Ness and R. E. Robson, Phys. Rev. A 34, 2185 (1986), ramp model: 6.838e4 m/s to 0.4 % (from memory).
     drift = values["drift_velocity_flux"]
     assert abs(float(drift["value"]) - 6.838e4) < 3 * float(drift["standard_error"]) + 0.004 * 6.838e4
     assert float(drift["standard_error"]) < 0.01 * 6.838e4
