@@ -22,7 +22,7 @@ from .two_term import TwoTerm, solve_two_term
 RATE_UNIT = UNIT_CROSS_SECTION_M2 * SPEED_1_EV  # m^3/s of one kernel frequency unit
 ELECTRONS = 1024
 ELECTRONS_OF_LONG_MEMORY = 256
-LONG_MEMORY_FLIGHTS = 1e5  # collisions of one electron within the memory, above which cohorts are small
+LONG_MEMORY_FLIGHTS = 2e4  # collisions of one electron within the memory, above which cohorts are small
 MEMORY = 6.0  # displacement histories reach back this many relaxation times: what is cut off is exp(-6) of the tail
 WINDOWS_PER_RELAXATION = 2.0
 LEAST_FLIGHTS_PER_WINDOW = 40.0  # below these the work at the end of a window would outweigh the flights
