@@ -40,7 +40,9 @@ def check(seed, name, field, ceiling, window, warm, windows, largest, batches):
         estimate = point[quantity]
         combined = math.hypot(error, estimate.standard_error)
         # The twin's error comes from some 20 batches: 3.5 of them are as rare as 3 of a known error.
-        assert abs(estimate.value - value) < 3.5 * combined, f"{quantity}: {estimate!r} against {value:.6g}({error:.2g})"
+        assert abs(estimate.value - value) < 3.5 * combined, (
+            f"{quantity}: {estimate!r} against {value:.6g}({error:.2g})"
+        )
     drift = point["drift_velocity_flux"]
     assert math.hypot(drift.standard_error, twin.drift[1]) < largest * drift.value
 

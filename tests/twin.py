@@ -34,7 +34,7 @@ class TwinResult:
 
 @njit(error_model="numpy")
 def _batch(seed, n, windows, warm, window, a, table, step, majorant, kinds, losses, masses, equal, sums):
-    """One batch of `n` electrons; sums: time, path, energy, ionizations, attachments, centroid, x^2 + y^2, real, trials."""
+    """One batch of `n` electrons; sums: time, path, energy, births, deaths, centroid, x^2 + y^2, real, trials."""
     np.random.seed(seed)
     room = 4 * n + 64
     now = np.zeros((room, 7))  # velocity, position, time left

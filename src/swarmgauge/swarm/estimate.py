@@ -4,6 +4,7 @@ import math
 from dataclasses import dataclass
 
 import numpy as np
+from scipy.special import stdtrit
 
 
 @dataclass(frozen=True)
@@ -21,6 +22,16 @@ class Estimate:
     unit: str
     samples: int
     upper_bound: float = math.nan
+
+    def interval(self, level: float = 0.95) -> tuple[float, float]:
+        """Central confidence interval at `level` (0.68, 0.95, 0.99, ...) by Student's t with samples - 1 degrees.
+
+        Where a process was never seen: from 0 to the upper bound, whatever the level up to 0.95, NaN above.
+        """
+        if not math.isnan(self.upper_bound):
+            return 0.0, self.upper_bound if level <= 0.95 else math.nan
+        reach = float(stdtrit(self.samples - 1, 0.5 + 0.5 * level)) * self.standard_error
+        return self.value - reach, self.value + reach
 
     def __repr__(self) -> str:
         if not math.isnan(self.upper_bound):
@@ -47,10 +58,11 @@ def with_error(value: float, error: float) -> str:
     return text if exponent == 0 else f"{text}e{exponent}"
 
 
-def jackknife(function, sums: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-    """Values and standard errors of `function` of the mean of independent rows, by leaving out one row at a time.
+def jackknife(function, sums: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """Values, standard errors and deviations of `function` of the mean of independent rows, leaving out one at a time.
 
     function : maps (rows, columns) to (rows, quantities), each row for itself; sums : (cohorts, columns).
+    deviations, (cohorts, quantities): sums of their products over cohorts are the covariances.
     The value is function(mean of all), never a mean of ratios. Errors: B. Efron, The Jackknife, the Bootstrap and Other
     Resampling Plans, SIAM 1982, eq. 3.4. Column sums are exact (math.fsum), so that their order does not matter.
     """
@@ -59,5 +71,6 @@ def jackknife(function, sums: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     value = function((total / count)[None, :])[0]
     without = function((total - sums) / (count - 1))
     centre = np.array([math.fsum(column) for column in without.T.tolist()]) / count
-    squares = np.array([math.fsum(column) for column in ((without - centre) ** 2).T.tolist()])
-    return value, np.sqrt((count - 1) / count * squares)
+    deviations = (without - centre) * math.sqrt((count - 1) / count)
+    squares = np.array([math.fsum(column) for column in (deviations**2).T.tolist()])
+    return value, np.sqrt(squares), deviations

@@ -64,7 +64,8 @@ class Point:
     TargetStatus of the judged quantities. above_tables : process to share of time above its last tabulated energy.
     warnings : sentences. status : "done", "target missed", "runaway", "extinct" or "interrupted". cohorts : how many.
     worst : judged quantity furthest from its target and its error over the target.
-    relaxation : what was cut off each cohort and how that was decided.
+    relaxation : what was cut off each cohort and how that was decided. deviations : (cohorts, quantities), jackknife
+    deviations in the order of the estimates; sums of their products over cohorts are covariances.
     """
 
     conditions: Conditions
@@ -79,10 +80,18 @@ class Point:
     wall_seconds: float
     cpu_seconds: float
     relaxation: str = ""
+    deviations: np.ndarray = field(default_factory=lambda: np.zeros((0, 0)))
     above_tables: dict[str, float] = field(default_factory=dict)
 
     def __getitem__(self, name: str) -> Estimate:
         return self.estimates[name]
+
+    def correlation(self, first: str, second: str) -> float:
+        """Correlation of the errors of two quantities; NaN where one of them has no error."""
+        names = list(self.estimates)
+        a, b = (self.deviations[:, names.index(name)] for name in (first, second))
+        size = float(np.sqrt((a @ a) * (b @ b)))
+        return float(a @ b) / size if size > 0.0 else float("nan")
 
     def __iter__(self) -> Iterator[str]:
         return iter(self.estimates)

@@ -196,7 +196,7 @@ class PointRun:
             return self._without_swarm()
         reducer = Reducer(self.pilot.plan)
         rows = np.array([self._sums[index] for index in range(self.cohorts)])
-        estimates, eedf = estimates_of(reducer, rows)
+        estimates, eedf, deviations = estimates_of(reducer, rows)
         judged = worst(self.targets, estimates, self.field.E_over_N_Td)
         name, excess = max(((n, e) for n, (_, e) in judged.items()), key=lambda pair: pair[1], default=("", 0.0))
         status = "done" if excess <= 1.0 else ("target missed" if self.finished else "interrupted")
@@ -215,6 +215,7 @@ class PointRun:
             cpu_seconds=self.cpu_seconds,
             relaxation=f"{self.pilot.plan.relaxation_windows} windows cut: {self.pilot.note}",
             above_tables=above,
+            deviations=deviations,
         )
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
@@ -261,8 +262,8 @@ class PointRun:
         )
 
 
-def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate], EnergyDistribution]:
-    """Estimates and energy distribution from the sums of independent cohorts, (cohorts, columns)."""
+def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate], EnergyDistribution, np.ndarray]:
+    """Estimates, energy distribution and jackknife deviations from the sums of cohorts, (cohorts, columns)."""
     names: list[str] = list(reducer.quantities(rows[:1]))
 
     def everything(sums: np.ndarray) -> np.ndarray:
@@ -270,7 +271,7 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
             [np.stack(list(reducer.quantities(sums).values()), axis=1), *reducer.distribution(sums)], axis=1
         )
 
-    values, errors = jackknife(everything, rows)
+    values, errors, deviations = jackknife(everything, rows)
     known = dict(zip(names, values, strict=False))
     total_time = float(rows[:, reducer.layout.slices["time"]].sum())
     bounds = reducer.upper_bounds(total_time, known)
@@ -285,4 +286,4 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
     eedf = EnergyDistribution(
         lab_edges_eV()[: filled + 1], values[f0][:filled], errors[f0][:filled], values[f1][:filled], errors[f1][:filled]
     )
-    return estimates, eedf
+    return estimates, eedf, deviations[:, : len(names)]
