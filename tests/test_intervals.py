@@ -1,4 +1,4 @@
-"""The error bars are honest: a thinned form of tests/coverage/study.py, which takes minutes."""
+"""The error bars are honest: a thinned form of tests/intervals/study.py, which takes minutes."""
 
 import sys
 from concurrent.futures import ThreadPoolExecutor
@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 from scipy.stats import binomtest
 
-sys.path.insert(0, str(Path(__file__).parent / "coverage"))
+sys.path.insert(0, str(Path(__file__).parent / "intervals"))
 from study import LEVELS, study
 
 RUNS = 40
