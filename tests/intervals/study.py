@@ -1,7 +1,8 @@
 """Are the error bars honest? Coverage of the 68 % and 95 % intervals: python tests/intervals/study.py
 
 Many short runs, each of 20 cohorts of its own random streams, some tenths of a second long. The truth of a case is
-the value from the sums of all its runs; its error, smaller than that of one run by the root of their number, is allowed for.
+the value from the sums of all its runs; its error, smaller than that of one run by the root of their number, is
+allowed for.
 """
 
 import argparse
