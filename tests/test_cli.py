@@ -77,7 +77,7 @@ def test_run_prints_targets_first_and_the_folder_first_and_last(case, capsys):
     assert faults == ""
     lines = text.splitlines()
     assert lines[0] == "case: standard errors asked for: mean_energy 1 %"
-    assert "oxygen-lawton1978/attachment-3body: third bodies that act: oxygen-lawton1978" in unwrapped(text)
+    assert "oxygen-lawton1978/attachment-3body: third bodies that act: 1 x oxygen-lawton1978" in unwrapped(text)
     assert lines[-1] == "case"
     assert max(map(len, lines)) <= 80
     assert sorted(path.name for path in Path("case").iterdir() if not path.name.startswith(".")) == [

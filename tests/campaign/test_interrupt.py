@@ -25,7 +25,9 @@ DEADLINE = 120.0  # seconds; compilation alone can take 20
 
 def start(path):
     command = [sys.executable, "-m", "swarmgauge", "run", str(path), "--workers", "2"]
-    return subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True)
+    # A parent that runs in the background may ignore SIGINT, and children inherit that.
+    listen = lambda: signal.signal(signal.SIGINT, signal.SIG_DFL)  # noqa: E731
+    return subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True, preexec_fn=listen)
 
 
 def wait_for_a_point(folder, process):

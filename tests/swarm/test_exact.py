@@ -63,12 +63,14 @@ def test_the_moments_agree_with_the_closed_forms_kept_with_the_data():
         assert exact["diffusion_L_times_N_flux"] == pytest.approx(along, rel=1e-5)
 
 
-@pytest.mark.parametrize("temperature", [0.0, ROOM_K])
-@pytest.mark.parametrize("mass", MASSES)
+@pytest.mark.parametrize(
+    ("mass", "temperature"),
+    [("m/M=1", 0.0), ("m/M=1", ROOM_K), ("m/M=0.01", 0.0), ("m/M=0.01", ROOM_K), ("4u", ROOM_K)],
+)
 def test_constant_collision_frequency(seed, mass, temperature):
     # m/M = 1 too: the two-term start is far off there (energy by a factor), and the swarm forgets it.
     molar_mass, field = MASSES[mass], FIELDS[mass]
-    count, fine, coarse = {"m/M=1": (60, 5e-4, 4e-3), "m/M=0.01": (40, 2e-3, 8e-3), "4u": (20, 8e-3, 0.03)}[mass]
+    count, fine, coarse = {"m/M=1": (40, 5e-4, 4e-3), "m/M=0.01": (30, 2e-3, 8e-3), "4u": (20, 8e-3, 0.04)}[mass]
     mixture = model(molar_mass, constant_frequency("elastic", NU), temperature_K=temperature)
     estimates, _ = swarm(mixture, field, seed, count)
     exact = constant_frequency_moments(molar_mass, field, temperature)
@@ -107,8 +109,11 @@ def chi_squared_of_shares(reducer, rows, exact_shares, bins):
     return stats.f.sf(squared * (count - free) / (free * (count - 1)), free, count - free), covariance
 
 
-@pytest.mark.parametrize("exponent", [-0.5, 0.0])
-@pytest.mark.parametrize("molar_mass", [ELECTRON_U, 100 * ELECTRON_U], ids=["m/M=1", "m/M=0.01"])
+@pytest.mark.parametrize(
+    ("molar_mass", "exponent"),
+    [(ELECTRON_U, -0.5), (ELECTRON_U, 0.0), (100 * ELECTRON_U, 0.0)],
+    ids=["constant nu, m/M=1", "hard sphere, m/M=1", "hard sphere, m/M=0.01"],
+)
 def test_thermal_equilibrium(seed, molar_mass, exponent):
     """Without a field: a Maxwellian at the gas's temperature whatever the collisions and masses.
 
@@ -116,7 +121,7 @@ def test_thermal_equilibrium(seed, molar_mass, exponent):
     """
     mixture = model(molar_mass, power_law("elastic", 6e-20, exponent), temperature_K=1000.0)
     thermal_eV = BOLTZMANN * 1000.0 / E_CHARGE
-    reducer, rows = cohorts(mixture, 0.0, seed, 60)
+    reducer, rows = cohorts(mixture, 0.0, seed, 40)
     estimates, eedf = estimates_of(reducer, rows)[:2]
     assert_exact(estimates, {"mean_energy": 1.5 * thermal_eV}, {"mean_energy": 4e-3})
     assert estimates["drift_velocity_flux"].value == 0.0
@@ -133,13 +138,14 @@ def test_thermal_equilibrium(seed, molar_mass, exponent):
 def test_einstein_relation(seed, molar_mass):
     # At E = 0, D/mu = kT/e; with constant nu the mobility is e (m + M) / (m M nu), so D = kT (m + M) / (m M nu).
     mixture = model(molar_mass, constant_frequency("elastic", NU), temperature_K=1000.0)
-    estimates, _ = swarm(mixture, 0.0, seed, 60)
+    estimates, _ = swarm(mixture, 0.0, seed, 30)
     mass = molar_mass * ATOMIC_MASS
     exact = BOLTZMANN * 1000.0 * (E_MASS + mass) / (E_MASS * mass * NU)
     names = [f"diffusion_{axis}_times_N_{kind}" for axis in "LT" for kind in ("flux", "bulk")]
-    assert_exact(estimates, dict.fromkeys(names, exact), {"diffusion": 8e-3})
+    assert_exact(estimates, dict.fromkeys(names, exact), {"diffusion": 0.012})
 
 
+@pytest.mark.slow
 def test_mobility_in_a_weak_field_obeys_the_einstein_relation(seed):
     # Hard spheres, two independent runs: D at E = 0 and mu in a field that heats by less than 0.1 %.
     gas = model(100 * ELECTRON_U, power_law("elastic", 6e-20), temperature_K=1000.0)
@@ -185,7 +191,7 @@ def test_druyvesteyn_and_davydov_distributions(seed, field, temperature):
     """f0 ~ exp(-int de / (kT + c/e)), c = (E/N sigma)^2 M / (6 m); cold: exp(-(e/e0)^2). For m/M -> 0, here 1e-3."""
     mixture = model(1000 * ELECTRON_U, power_law("elastic", 6e-20), temperature_K=temperature)
     kT, c = BOLTZMANN * temperature / E_CHARGE, (field * TOWNSEND / 6e-20) ** 2 * 1000 / 6
-    reducer, rows = cohorts(mixture, field, seed, 40)
+    reducer, rows = cohorts(mixture, field, seed, 20)
     estimates, eedf = estimates_of(reducer, rows)[:2]
 
     def shape(e):
@@ -199,37 +205,42 @@ def test_druyvesteyn_and_davydov_distributions(seed, field, temperature):
     # W = (1/3) sqrt(2e/m) int e f1, f1 = -(E/N sigma) df0/de, by parts (1/3) sqrt(2e/m) (E/N sigma) int f0
     drift = SPEED_1_EV / 3 * field * TOWNSEND / 6e-20 * norm * integrate.quad(shape, 0, top, limit=500)[0]
     exact = {"mean_energy": mean, "drift_velocity_flux": drift}
-    assert_exact(estimates, exact, {"mean_energy": 6e-3, "drift": 0.01}, theory=2e-3)
+    assert_exact(estimates, exact, {"mean_energy": 0.01, "drift": 0.015}, theory=2e-3)
     f0 = norm * shape(eedf.energy_eV)
     good = (eedf.energy_eV > 0.02 * mean) & (eedf.energy_eV < 3.0 * mean)
     off = (eedf.f0 - f0)[good]
     error = np.hypot(eedf.f0_standard_error, 4e-3 * f0)[good]  # theory: m/M and the width of the bins
-    assert np.median(eedf.f0_standard_error[good] / f0[good]) < 0.02
+    assert np.median(eedf.f0_standard_error[good] / f0[good]) < 0.03
     assert np.mean((off / error) ** 2) < 2.0
     assert abs(off / error).max() < 5.0
 
 
-GROWTH = [(1e-15, 4e-16), (1e-14, 0.0), (0.0, 5e-15), (2e-14, 2e-14)]
+HUNDREDFOLD = 100 * ELECTRON_U
 
 
-@pytest.mark.parametrize(("ionization", "attachment"), GROWTH)
-@pytest.mark.parametrize("molar_mass", [ELECTRON_U, 100 * ELECTRON_U], ids=["m/M=1", "m/M=0.01"])
+@pytest.mark.parametrize(
+    ("molar_mass", "ionization", "attachment"),
+    [
+        (HUNDREDFOLD, 1e-15, 4e-16),
+        (HUNDREDFOLD, 0.0, 5e-15),
+        (ELECTRON_U, 1e-14, 0.0),
+        (ELECTRON_U, 2e-14, 2e-14),
+        pytest.param(HUNDREDFOLD, 2e-14, 2e-14, marks=pytest.mark.slow),
+    ],
+)
 def test_constant_ionization_and_attachment_frequencies(seed, molar_mass, ionization, attachment):
     processes = [constant_frequency("elastic", NU)]
     if ionization:
         processes.append(constant_frequency("ionization", ionization, sharing=Sharing("equal")))
     if attachment:
         processes.append(constant_frequency("attachment", attachment))
-    estimates, _ = swarm(model(molar_mass, *processes), 50.0, seed, 40)
+    estimates, _ = swarm(model(molar_mass, *processes), 50.0, seed, 24)
     exact = constant_frequency_moments(molar_mass, 50.0, 0.0, ionization)
     exact["collision_frequency_over_N"] += ionization + attachment
     exact["net_frequency_over_N"] = ionization - attachment
     exact["ionization_frequency_over_N"], exact["attachment_frequency_over_N"] = ionization, attachment
     exact = {name: value for name, value in exact.items() if value != 0.0}
-    if ionization == 0.0:
-        exact = {name: value for name, value in exact.items() if not name.startswith(("mean", "drift", "diffusion"))}
-        exact |= constant_frequency_moments(molar_mass, 50.0, 0.0) | {"collision_frequency_over_N": NU + attachment}
-    precision = {"collision": 1e-3, "net": 2e-3, "ion": 2e-3, "att": 2e-3, "drift": 3e-3, "mean": 3e-3, "diff": 0.012}
+    precision = {"collision": 1e-3, "net": 2e-3, "ion": 2e-3, "att": 2e-3, "drift": 4e-3, "mean": 4e-3, "diff": 0.015}
     assert_exact(estimates, exact, precision)
     bulk, flux = estimates["drift_velocity_bulk"], estimates["drift_velocity_flux"]
     assert bulk.value == pytest.approx(flux.value, rel=1e-3)
@@ -265,10 +276,11 @@ def test_attachment_frequency_proportional_to_energy(seed, kappa):
     exact = attachment_by_energy(5.0, kappa, ratio)
     assert exact["drift_velocity_bulk"] < 0.75 * exact["drift_velocity_flux"]
     estimates, _ = swarm(mixture, 5.0, seed, 40)
-    precision = {"mean": 5e-3, "net": 5e-3, "drift": 8e-3, "diffusion": 0.03}
+    precision = {"mean": 5e-3, "net": 5e-3, "drift": 0.015, "diffusion": 0.03}
     assert_exact(estimates, exact, precision, theory=3 * ratio)
 
 
+@pytest.mark.slow
 def test_the_shipped_attachment_model(seed):
     # gases/model-attachment.toml states the factor 0.93 of bulk to flux drift at 10 Td.
     mixture = Mixture({"model-attachment": 1.0})
