@@ -13,7 +13,7 @@ BATCH = 20
 WORK = {"cohorts": 0}
 
 
-def stand_in_key(mixture, field, seed):
+def stand_in_key(mixture, field, seed, accuracy=None):
     text = json.dumps([mixture.canonical(), field.E_over_N_Td, seed], sort_keys=True)
     return hashlib.sha256(text.encode()).hexdigest()[:32]
 

@@ -9,9 +9,8 @@ from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 
-from swarmgauge.swarm.plan import point_key
 from swarmgauge.swarm.point import Point
-from swarmgauge.swarm.point_run import PointRun
+from swarmgauge.swarm.point_run import PointRun, point_key
 from swarmgauge.swarm.schedule import drive
 
 from .provenance import provenance
@@ -138,7 +137,7 @@ def _prepare(run_file: RunFile, place: int, store: ResultsFolder) -> PointRun:
         seed=run_file.seed,
         accuracy=run_file.accuracy or None,
         max_minutes=run_file.max_minutes_per_point,
-        state=store.load(point_key(conditions.mixture, conditions.field, run_file.seed)),
+        state=store.load(point_key(conditions.mixture, conditions.field, run_file.seed, run_file.accuracy)),
     )
 
 

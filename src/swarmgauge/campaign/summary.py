@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Any
 
 from swarmgauge.swarm.estimate import Estimate
-from swarmgauge.swarm.plan import point_key
+from swarmgauge.swarm.point_run import point_key
 
 from .campaign import Outcome
 from .console import describe, wrapped
@@ -24,7 +24,7 @@ def points_table(run_file: RunFile, folder: Path) -> Iterator[str]:
         points = list(block)
         yield from wrapped(f"{describe(points[0].mixture)}:")
         for point in points:
-            key = _key(point, run_file.seed)
+            key = _key(point, run_file)
             kept = "there" if store.has(key) else "to do"
             yield f"    {short(key)}  {point.field.E_over_N_Td:>10g} Td  {kept}"
 
@@ -32,7 +32,7 @@ def points_table(run_file: RunFile, folder: Path) -> Iterator[str]:
 def points_json(run_file: RunFile, folder: Path) -> list[dict[str, Any]]:
     """The points of a run file, and which of them the folder holds."""
     store = ResultsFolder(folder)
-    keys = [_key(point, run_file.seed) for point in run_file.points]
+    keys = [_key(point, run_file) for point in run_file.points]
     return [
         {"point": key, **_conditions(point), "there": store.has(key)}
         for key, point in zip(keys, run_file.points, strict=True)
@@ -61,8 +61,8 @@ def outcome_json(outcome: Outcome) -> dict[str, Any]:
     }
 
 
-def _key(point: Conditions, seed: int) -> str:
-    return point_key(point.mixture, point.field, seed)
+def _key(point: Conditions, run_file: RunFile) -> str:
+    return point_key(point.mixture, point.field, run_file.seed, run_file.accuracy)
 
 
 def _conditions(point: Any) -> dict[str, Any]:

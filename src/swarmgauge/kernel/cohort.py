@@ -14,6 +14,7 @@ from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, sco
 from .lanes import ELECTRON_FIELDS, LEFT, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, WEIGHT, X, Y, Z
 from .lookup import LAB_CELLS, SPEED_CELLS
 from .record import list_ended, list_rare, record
+from .split import renormalise, split_and_roulette
 from .streams import next_word, one_to_two
 
 # Status of a cohort
@@ -31,6 +32,7 @@ class Workspace(NamedTuple):
     combed: np.ndarray  # (ELECTRON_FIELDS * lanes,), target of the comb
     history: np.ndarray  # (lanes * 3 * lags,)
     other_history: np.ndarray  # the same, target of the next window
+    population: np.ndarray  # (1,) int64; electrons at the start of the next window
     rare: np.ndarray  # (lanes + 1,) int64
     ended: np.ndarray  # (lanes + 1,) int64
     histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
@@ -49,6 +51,7 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
         combed=np.zeros(ELECTRON_FIELDS * lanes),
         history=np.zeros(lanes * 3 * lags),
         other_history=np.zeros(lanes * 3 * lags),
+        population=np.zeros(1, dtype=np.int64),
         rare=np.zeros(lanes + 1, dtype=np.int64),
         ended=np.zeros(lanes + 1, dtype=np.int64),
         histogram=np.zeros(gases * SPEED_CELLS * 2),
@@ -108,7 +111,7 @@ def add_lane_sums(rows, lanes, series, window):
 
 
 @njit(inline="always")
-def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal):
+def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, splitting):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
     rows = work.rows
     fly(active, tables, field, rows, lanes, gases, thermal)
@@ -117,6 +120,8 @@ def step(active, alive, tables, history, work, window_time, field, measuring, la
     born_from = alive
     rare = list_rare(active, rows, work.rare, lanes)
     alive = collide(rare, alive, tables, history, work, window_time, measuring, lanes, lags)
+    if splitting and alive >= 0:
+        alive = split_and_roulette(active, alive, tables, history, work, window_time, lanes, lags)
     ended = list_ended(active, rows, work.ended, lanes)
     for child in range(born_from, alive):
         swap_electrons(rows, child, active, lanes)
@@ -137,24 +142,40 @@ def end_window(alive, tables, history, extended, work, window_time, lanes, lags)
 
 
 @njit(inline="always")
-def windows(tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal):
+def windows(
+    tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, splitting
+):
     """Run as many windows as `series` has rows; returns the status.
 
     tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
-    size : electrons at the start of every window; lags : windows in a displacement history; window_time and field in
-    kernel units; measuring : whether histograms and counts are taken (the path and lag sums always are); max_steps :
-    bound on the steps of one window; lanes, gases, thermal : compile-time constants.
+    size : total weight at the start of every window, and number of electrons unless they are split; lags : windows in a
+    displacement history; window_time and field in kernel units; measuring : whether histograms and counts are taken
+    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, splitting :
+    compile-time constants.
     After an odd number of windows the histories stand in `work.other_history`.
     """
     history, extended = work.history, work.other_history
     for window in range(series.shape[0]):
-        for lane in range(size):
+        alive = work.population[0]
+        for lane in range(alive):
             store(work.rows, lane + LEFT * lanes, window_time)
-        active, alive, steps = size, size, 0
+        active, steps = alive, 0
         path_before = work.point_sums[PATH]
         while active > 0:
             active, alive = step(
-                active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal
+                active,
+                alive,
+                tables,
+                history,
+                work,
+                window_time,
+                field,
+                measuring,
+                lanes,
+                lags,
+                gases,
+                thermal,
+                splitting,
             )
             steps += 1
             if alive < 0:
@@ -167,21 +188,26 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
         series[window, SERIES_ALIVE] = alive
         if alive == 0:
             return EXTINCT
-        comb(alive, size, work.rows, work.combed, lanes)
+        if splitting:
+            renormalise(alive, size, work.rows, lanes)
+            work.population[0] = alive
+        else:
+            comb(alive, size, work.rows, work.combed, lanes)
+            work.population[0] = size
         history, extended = extended, history
     return RUNNING
 
 
 @cache
-def compiled_windows(lanes: int, gases: int, thermal: bool):
-    """The entry kernel for a number of lanes and gases, cold or thermal; arguments of `windows` less the last three."""
+def compiled_windows(lanes: int, gases: int, thermal: bool, splitting: bool):
+    """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last four."""
     digest = kernel_digest()
 
     def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
         digest  # noqa: B018 - part of the cache key
         prefer_wide_vectors()
         return windows(
-            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal
+            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, splitting
         )
 
     return compiled(run_windows)

@@ -13,6 +13,8 @@ the end of each electron's path (window end or attachment); a child, which copie
 there at its birth with a minus sign. The R sums are taken over the population at the end of each window.
 """
 
+import math
+
 from numba import njit
 
 from .bits import load, load_table, store
@@ -79,7 +81,7 @@ def score_window_end(lane, net_frequency, rows, extended, lag_sums, point_sums, 
     vx = load(rows, lane + VX * lanes)
     vy = load(rows, lane + VY * lanes)
     vz = load(rows, lane + VZ * lanes)
-    cell, fraction = speed_cell((vx * vx + vy * vy + vz * vz) ** 0.5)
+    cell, fraction = speed_cell(math.sqrt(vx * vx + vy * vy + vz * vz))
     low = load_table(net_frequency, 2 * cell)
     rate = low + fraction * (load_table(net_frequency, 2 * cell + 1) - low)
     point_sums[END_WEIGHT] += weight

@@ -49,6 +49,7 @@ class Tables(NamedTuple):
     sharing, sharing_fraction : (P,) int64 and float64; law of energy sharing in ionization.
     electron_part, neutral_part : (G,); m / (m + M) and M / (m + M).
     neutral_speed : (G,); standard deviation of one velocity component of the neutrals.
+    target_weight : (ENERGY_CELLS,); weight that an electron of this energy should have, where electrons are split.
     net_frequency : (SPEED_CELLS, 2), flat; ionization minus attachment frequency of the mixture against the electron's
         own speed, averaged over the neutrals.
     """
@@ -66,6 +67,7 @@ class Tables(NamedTuple):
     electron_part: np.ndarray
     neutral_part: np.ndarray
     neutral_speed: np.ndarray
+    target_weight: np.ndarray
     net_frequency: np.ndarray
 
 

@@ -14,7 +14,7 @@ _HOME = {
     "PointRun": "point_run",
     "drive": "schedule",
     "parse_accuracy": "targets",
-    "point_key": "plan",
+    "point_key": "point_run",
     "simulate": "schedule",
     "solve_two_term": "two_term",
 }

@@ -16,21 +16,25 @@ from swarmgauge.kernel.lanes import lane_count
 from swarmgauge.kernel.lookup import Tables
 
 from .field import Field
+from .rare import target_weights
 from .tables import TOWNSEND_IN_KERNEL_UNITS, UNIT_CROSS_SECTION_M2, ProcessCurve, build_tables, process_curves
 from .two_term import TwoTerm, solve_two_term
 
 RATE_UNIT = UNIT_CROSS_SECTION_M2 * SPEED_1_EV  # m^3/s of one kernel frequency unit
 ELECTRONS = 1024
 ELECTRONS_OF_LONG_MEMORY = 256
+ELECTRONS_TO_SPLIT = 512  # weight of a cohort whose electrons are split
+SPLIT_ELECTRONS = 2736  # electrons that it may have then
 LONG_MEMORY_FLIGHTS = 2e4  # collisions of one electron within the memory, above which cohorts are small
 MEMORY = 6.0  # displacement histories reach back this many relaxation times: what is cut off is exp(-6) of the tail
 WINDOWS_PER_RELAXATION = 2.0
 LEAST_FLIGHTS_PER_WINDOW = 40.0  # below these the work at the end of a window would outweigh the flights
+START_BITS = 16  # of the start distribution: its last bits differ between processors, and must not flip a rounding
 LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by attachment
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = ("plan.py", "tables.py", "cohort.py", "pilot.py")
+_SOURCES = ("plan.py", "rare.py", "tables.py", "cohort.py", "pilot.py")
 
 
 @dataclass(frozen=True, eq=False)
@@ -40,6 +44,7 @@ class Plan:
     mixture, field, seed : the point. electrons : number in a cohort. lags : windows in a displacement history.
     window_time : kernel units. start_edges_eV, start_cumulated : (n + 1,), start distribution.
     relaxation_windows, measured_windows : dropped and used windows of a cohort.
+    rare, target_weight : processes for which electrons are split, and the weights, (ENERGY_CELLS,); () and None else.
     """
 
     mixture: Mixture
@@ -53,6 +58,8 @@ class Plan:
     relaxation_windows: int = 0
     measured_windows: int = 0
     window_scale: float = 1.0
+    rare: tuple[str, ...] = ()
+    target_weight: np.ndarray | None = None
 
     @property
     def acceleration(self) -> float:
@@ -62,7 +69,7 @@ class Plan:
     @property
     def lanes(self) -> int:
         """Lanes of the kernel; small cohorts use the kernel of large ones."""
-        return lane_count(max(self.electrons, ELECTRONS))
+        return lane_count(max(self.electrons, ELECTRONS) if self.target_weight is None else SPLIT_ELECTRONS)
 
     @cached_property
     def curves(self) -> list[ProcessCurve]:
@@ -77,7 +84,7 @@ class Plan:
     @cached_property
     def tables(self) -> Tables:
         """Tables of the kernel."""
-        return build_tables(self.mixture, self.curves, self.acceleration, self.window_scale)
+        return build_tables(self.mixture, self.curves, self.acceleration, self.window_scale, self.target_weight)
 
     @cached_property
     def stream_key(self) -> str:
@@ -101,11 +108,12 @@ def first_plan(
     *,
     electrons: int | None = None,
     window_scale: float = 1.0,
+    rare: tuple[str, ...] = (),
 ) -> Plan:
     """A plan from the two-term solution; windows are still to be set by a pilot.
 
     A window is half a relaxation time or 40 collisions, whichever is longer, but no more than what changes the
-    population by 15 %. Numbers that come from linear algebra are rounded (window to 2 digits, start distribution to 24
+    population by 15 %. Numbers that come from linear algebra are rounded (window to 2 digits, start distribution to 16
     bits), so that the last bits, which depend on the processor, do not reach the swarm.
     """
     values = two_term.values
@@ -120,22 +128,38 @@ def first_plan(
     if electrons is None:
         long_memory = MEMORY * collisions / relaxation > LONG_MEMORY_FLIGHTS
         electrons = ELECTRONS_OF_LONG_MEMORY if long_memory else ELECTRONS
+    weights = None
+    if rare:
+        electrons = min(electrons, ELECTRONS_TO_SPLIT)
+        weights = target_weights(mixture, two_term, rare, electrons)
     edges, cumulated = start_distribution(two_term)
-    return Plan(mixture, field, seed, electrons, lags, window, edges, cumulated, window_scale=window_scale)
+    return Plan(
+        mixture,
+        field,
+        seed,
+        electrons,
+        lags,
+        window,
+        edges,
+        cumulated,
+        window_scale=window_scale,
+        rare=rare,
+        target_weight=weights,
+    )
 
 
 def start_distribution(two_term: TwoTerm) -> tuple[np.ndarray, np.ndarray]:
-    """Energy edges (eV) and share of electrons below each, rounded to 24 bits."""
+    """Energy edges (eV) and share of electrons below each, rounded."""
     edges = two_term.energy_edges_eV
     share = np.maximum(two_term.f0, 0.0) * np.diff(edges**1.5)
     cumulated = np.concatenate([[0.0], np.cumsum(share)])
-    rounded = np.round(cumulated / cumulated[-1] * 2.0**24) / 2.0**24
+    rounded = np.round(cumulated / cumulated[-1] * 2.0**START_BITS) / 2.0**START_BITS
     mantissa, exponent = np.frexp(edges)
-    return np.ldexp(np.round(mantissa * 2.0**24) / 2.0**24, exponent), rounded
+    return np.ldexp(np.round(mantissa * 2.0**START_BITS) / 2.0**START_BITS, exponent), rounded
 
 
-def point_key(mixture: Mixture, field: Field, seed: int) -> str:
-    """Hash of tables, conditions, seed, numerical parameters and kernel version: 32 hexadecimal digits."""
+def plan_key(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = ()) -> str:
+    """Hash of tables, conditions, seed, split processes, numerical parameters and kernel version: 32 hex digits."""
     folder = Path(__file__).parent
     method = hashlib.sha256(b"".join((folder / name).read_bytes() for name in _SOURCES)).hexdigest()
     return _hash(
@@ -143,6 +167,7 @@ def point_key(mixture: Mixture, field: Field, seed: int) -> str:
             "mixture": mixture.canonical(),
             "field": _field(field),
             "seed": seed,
+            "rare": list(rare),
             "method": method,
             "kernel": kernel_digest(),
         }

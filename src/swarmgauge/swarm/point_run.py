@@ -13,9 +13,10 @@ from swarmgauge.gas import Mixture
 from .estimate import Estimate, jackknife
 from .field import Field
 from .pilot import Pilot, fly_pilot
-from .plan import Plan, first_plan, point_key, solved
+from .plan import Plan, first_plan, plan_key, solved
 from .point import Conditions, EnergyDistribution, Point, TargetStatus
 from .quantities import unit_of
+from .rare import rare_asked
 from .reduce import Reducer, lab_edges_eV
 from .targets import parse_accuracy, worst
 from .two_term import TwoTerm
@@ -26,10 +27,15 @@ LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on 
 SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, one that has not was cut
 
 
-def prepare(mixture: Mixture, field: Field, seed: int) -> Pilot:
+def prepare(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = ()) -> Pilot:
     """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor."""
     two_term = solved(mixture, field)
-    return replace(fly_pilot(first_plan(mixture, field, seed, two_term)), two_term=two_term)
+    return replace(fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare)), two_term=two_term)
+
+
+def point_key(mixture: Mixture, field: Field, seed: int, accuracy: Mapping[str, Any] | None = None) -> str:
+    """The key of the point file: 32 hexadecimal digits; accuracy matters only where it asks for rare processes."""
+    return plan_key(mixture, field, seed, rare_asked(mixture, field, parse_accuracy(accuracy)))
 
 
 class PointRun:
@@ -52,7 +58,8 @@ class PointRun:
         self.mixture, self.field, self.seed = mixture, field, seed
         self.targets = parse_accuracy(accuracy)
         self.max_minutes = max_minutes
-        self.key = point_key(mixture, field, seed)
+        self.rare = rare_asked(mixture, field, self.targets)
+        self.key = plan_key(mixture, field, seed, self.rare)
         self.pilot: Pilot | None = None
         self.finished = False
         self.cpu_seconds = 0.0
@@ -148,6 +155,7 @@ class PointRun:
                 "measured_windows": plan.measured_windows,
                 "start_edges_eV": plan.start_edges_eV,
                 "start_cumulated": plan.start_cumulated,
+                **({} if plan.target_weight is None else {"target_weight": plan.target_weight}),
                 "sums": np.array([self._sums[index] for index in range(count)]),
             }
         return state
@@ -169,6 +177,8 @@ class PointRun:
                 state["start_cumulated"],
                 int(state["relaxation_windows"]),
                 int(state["measured_windows"]),
+                rare=self.rare,
+                target_weight=state.get("target_weight"),
             )
             self._sums = dict(enumerate(state["sums"]))
         self.set_pilot(Pilot(plan, state["outcome"], state["stretch_energies"], state["note"]))

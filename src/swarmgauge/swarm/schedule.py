@@ -81,7 +81,7 @@ def _submit(runs: Sequence[PointRun], executor: Executor, under_way: dict, most:
         if run.pilot is None or run.pilot.plan is None:
             if PREPARE not in mine:
                 run.start_clock()
-                under_way[executor.submit(prepare, run.mixture, run.field, run.seed)] = (run, PREPARE)
+                under_way[executor.submit(prepare, run.mixture, run.field, run.seed, run.rare)] = (run, PREPARE)
             continue
         for index in run.missing():
             if len(under_way) >= most:

@@ -126,7 +126,11 @@ def process_curves(mixture: Mixture, *, passive: bool) -> list[ProcessCurve]:
 
 
 def build_tables(
-    mixture: Mixture, curves: list[ProcessCurve], acceleration: float, window_scale: float = 1.0
+    mixture: Mixture,
+    curves: list[ProcessCurve],
+    acceleration: float,
+    window_scale: float = 1.0,
+    target_weight: np.ndarray | None = None,
 ) -> Tables:
     """The kernel's tables for the acting `curves` of a mixture.
 
@@ -167,6 +171,7 @@ def build_tables(
         electron_part=ratio / (1.0 + ratio),
         neutral_part=1.0 / (1.0 + ratio),
         neutral_speed=sigma,
+        target_weight=np.ones(ENERGY_CELLS) if target_weight is None else np.array(target_weight),
         net_frequency=net_frequency(others, fractions, sigma).ravel(),
     )
 
