@@ -12,6 +12,7 @@ _HOME = {
     "load_set": "gas",
     "open_results": "campaign",
     "simulate": "swarm",
+    "simulate_difference": "swarm",
 }
 __all__ = sorted(_HOME)
 __version__ = "0.1.0"

@@ -2,6 +2,7 @@
 
 import hashlib
 import json
+import math
 from types import SimpleNamespace
 
 import numpy as np
@@ -83,6 +84,8 @@ class StandInRun:
             },
             warnings=(),
             relaxation="",
+            ancestors=math.nan,
+            effective_size=math.nan,
             above_tables={},
             status="done" if self.worst[1] <= 1 else "target missed",
             cohorts=self.cohorts,

@@ -10,7 +10,7 @@ import pytest
 
 from kernel.model_gases import HELIUM_U, model, power_law
 from swarmgauge.gas import Mixture
-from swarmgauge.kernel.cohort import compiled_windows
+from swarmgauge.kernel.cohort import COMBED, compiled_windows
 from swarmgauge.kernel.lanes import CUT, NULL, lane_count
 from swarmgauge.kernel.lookup import LAB_CELLS
 from swarmgauge.swarm.cohort import CohortRun, layout_of, run_cohort
@@ -34,7 +34,7 @@ def test_one_compilation_serves_all_gases():
         plan = first_plan(mixture, field, 1, solved(mixture, field), electrons=64)
         CohortRun(plan, 0).windows(1, True)
         CohortRun(plan, 0).windows(2, False)
-    kernel = compiled_windows(lane_count(1024), 1, False, False)
+    kernel = compiled_windows(lane_count(1024), 1, False, COMBED)
     assert len(kernel.signatures) == 1
 
 

@@ -258,7 +258,7 @@ def numbered_rows(lanes):
 
 def test_swap_moves_electrons_only():
     rows = numbered_rows(8)
-    swap_electrons(rows.ravel(), 2, 5, 8)
+    swap_electrons(rows.ravel(), 2, 5, 8, ELECTRON_FIELDS)
     before = numbered_rows(8)
     assert (rows[:ELECTRON_FIELDS, 2] == before[:ELECTRON_FIELDS, 5]).all()
     assert (rows[:ELECTRON_FIELDS, 5] == before[:ELECTRON_FIELDS, 2]).all()
@@ -279,7 +279,7 @@ def test_retire_keeps_every_electron_in_its_place(trial):
     rows[LEFT, active:alive] = 0.0
     ended = np.flatnonzero(fate <= 0.0)
     buffer = np.concatenate([ended, np.full(lanes + 1 - len(ended), -7)])
-    new_active, new_alive = retire(buffer, len(ended), active, alive, rows.ravel(), lanes)
+    new_active, new_alive = retire(buffer, len(ended), active, alive, rows.ravel(), lanes, ELECTRON_FIELDS)
     assert new_active == np.count_nonzero(fate > 0)
     assert new_alive == alive - np.count_nonzero(fate < 0)
     names = rows[SLOT] - 1000 * SLOT  # the lane in which each electron began

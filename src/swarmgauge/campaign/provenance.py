@@ -2,6 +2,7 @@
 
 import hashlib
 import json
+import math
 import os
 import platform
 from collections.abc import Iterable
@@ -91,6 +92,11 @@ def _fractions(mixture: Mixture) -> dict[str, float]:
     return {gas.name: float(fraction) for gas, fraction in zip(mixture.gases, mixture.fractions, strict=True)}
 
 
+def _rounded(value: float) -> float | None:
+    """Four digits, and nothing for NaN, which JSON does not know."""
+    return float(f"{value:.4g}") if math.isfinite(value) else None
+
+
 def _set_hash(gas: Gas) -> str:
     return hashlib.sha256(json.dumps(gas.canonical(), sort_keys=True).encode()).hexdigest()
 
@@ -104,6 +110,8 @@ def _point(key: str, point: Point) -> dict[str, Any]:
         "wall_seconds": round(point.wall_seconds, 3),
         "cpu_seconds": round(point.cpu_seconds, 3),
         "relaxation": point.relaxation,
+        "ancestors": _rounded(point.ancestors),
+        "effective_size": _rounded(point.effective_size),
         "share_of_time_above_table_end": {name: float(f"{share:.3g}") for name, share in point.above_tables.items()},
         "warnings": list(point.warnings),
     }

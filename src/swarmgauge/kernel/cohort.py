@@ -6,12 +6,14 @@ from typing import NamedTuple
 import numpy as np
 from numba import njit
 
+from .ancestry import count_families, found_families
 from .bits import load, prefer_wide_vectors, store
 from .build import compiled, kernel_digest
 from .collide import collide, retire, swap_electrons
+from .coupled import begin_streams, resample
 from .flight import fly
 from .history import LAG_SUMS, PATH, POINT_SUMS, extend_history, score_path, score_window_end
-from .lanes import ELECTRON_FIELDS, LEFT, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, WEIGHT, X, Y, Z
+from .lanes import COUPLED_FIELDS, ELECTRON_FIELDS, LEFT, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, WEIGHT, X, Y, Z
 from .lookup import LAB_CELLS, SPEED_CELLS
 from .record import list_ended, list_rare, record
 from .split import renormalise, split_and_roulette
@@ -19,6 +21,10 @@ from .streams import next_word, one_to_two
 
 # Status of a cohort
 RUNNING, FULL, EXTINCT, STUCK = 0, 1, 2, 3
+
+# How the population is brought back to its size: a comb of equal weights; weights that follow the energy where rare
+# events are asked for; each electron by its own random number in coupled runs
+COMBED, SPLIT, COUPLED = 0, 1, 2
 
 # Columns of the series, one row a window
 SERIES_TIME, SERIES_ENERGY, SERIES_Z, SERIES_PATH, SERIES_ALIVE = 0, 1, 2, 3, 4
@@ -32,7 +38,8 @@ class Workspace(NamedTuple):
     combed: np.ndarray  # (ELECTRON_FIELDS * lanes,), target of the comb
     history: np.ndarray  # (lanes * 3 * lags,)
     other_history: np.ndarray  # the same, target of the next window
-    population: np.ndarray  # (1,) int64; electrons at the start of the next window
+    population: np.ndarray  # (2,) int64; electrons at the start of the next window, and its number
+    families: np.ndarray  # (lanes,), see `ancestry`
     rare: np.ndarray  # (lanes + 1,) int64
     ended: np.ndarray  # (lanes + 1,) int64
     histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
@@ -51,7 +58,8 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
         combed=np.zeros(ELECTRON_FIELDS * lanes),
         history=np.zeros(lanes * 3 * lags),
         other_history=np.zeros(lanes * 3 * lags),
-        population=np.zeros(1, dtype=np.int64),
+        population=np.zeros(2, dtype=np.int64),
+        families=np.zeros(lanes),
         rare=np.zeros(lanes + 1, dtype=np.int64),
         ended=np.zeros(lanes + 1, dtype=np.int64),
         histogram=np.zeros(gases * SPEED_CELLS * 2),
@@ -111,7 +119,7 @@ def add_lane_sums(rows, lanes, series, window):
 
 
 @njit(inline="always")
-def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, splitting):
+def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, upkeep):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
     rows = work.rows
     fly(active, tables, field, rows, lanes, gases, thermal)
@@ -120,15 +128,18 @@ def step(active, alive, tables, history, work, window_time, field, measuring, la
     born_from = alive
     rare = list_rare(active, rows, work.rare, lanes)
     alive = collide(rare, alive, tables, history, work, window_time, measuring, lanes, lags)
-    if splitting and alive >= 0:
+    if upkeep == SPLIT and alive >= 0:
         alive = split_and_roulette(active, alive, tables, history, work, window_time, lanes, lags)
     ended = list_ended(active, rows, work.ended, lanes)
+    fields = COUPLED_FIELDS if upkeep == COUPLED else ELECTRON_FIELDS
     for child in range(born_from, alive):
-        swap_electrons(rows, child, active, lanes)
+        if upkeep == COUPLED:
+            begin_streams(child, work.population[1], rows, lanes)
+        swap_electrons(rows, child, active, lanes, fields)
         active += 1
     if alive < 0:
         return active, alive
-    return retire(work.ended, ended, active, alive, rows, lanes)
+    return retire(work.ended, ended, active, alive, rows, lanes, fields)
 
 
 @njit(forceinline=True)
@@ -142,15 +153,13 @@ def end_window(alive, tables, history, extended, work, window_time, lanes, lags)
 
 
 @njit(inline="always")
-def windows(
-    tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, splitting
-):
+def windows(tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep):
     """Run as many windows as `series` has rows; returns the status.
 
     tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
     size : total weight at the start of every window, and number of electrons unless they are split; lags : windows in a
     displacement history; window_time and field in kernel units; measuring : whether histograms and counts are taken
-    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, splitting :
+    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, upkeep :
     compile-time constants.
     After an odd number of windows the histories stand in `work.other_history`.
     """
@@ -159,6 +168,9 @@ def windows(
         alive = work.population[0]
         for lane in range(alive):
             store(work.rows, lane + LEFT * lanes, window_time)
+        if upkeep == COUPLED:
+            for lane in range(alive):
+                begin_streams(lane, work.population[1], work.rows, lanes)
         active, steps = alive, 0
         path_before = work.point_sums[PATH]
         while active > 0:
@@ -175,7 +187,7 @@ def windows(
                 lags,
                 gases,
                 thermal,
-                splitting,
+                upkeep,
             )
             steps += 1
             if alive < 0:
@@ -188,18 +200,24 @@ def windows(
         series[window, SERIES_ALIVE] = alive
         if alive == 0:
             return EXTINCT
-        if splitting:
+        work.population[1] += 1
+        if work.population[1] % lags == 0:
+            count_families(alive, work.rows, work.families, work.point_sums, lanes)
+            found_families(alive, work.rows, lanes)
+        if upkeep == SPLIT:
             renormalise(alive, size, work.rows, lanes)
-            work.population[0] = alive
+        elif upkeep == COUPLED:
+            alive = resample(alive, size, work.population[1], work.rows, work.combed, lanes)
         else:
             comb(alive, size, work.rows, work.combed, lanes)
-            work.population[0] = size
+            alive = size
+        work.population[0] = alive
         history, extended = extended, history
     return RUNNING
 
 
 @cache
-def compiled_windows(lanes: int, gases: int, thermal: bool, splitting: bool):
+def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int):
     """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last four."""
     digest = kernel_digest()
 
@@ -207,7 +225,7 @@ def compiled_windows(lanes: int, gases: int, thermal: bool, splitting: bool):
         digest  # noqa: B018 - part of the cache key
         prefer_wide_vectors()
         return windows(
-            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, splitting
+            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep
         )
 
     return compiled(run_windows)

@@ -7,18 +7,34 @@ import math
 
 from numba import njit
 
-from .bits import load, load_int, load_table, store
+from .bits import load, load_int, load_table, store, store_word
 from .flight import isotropic_direction, scattered
 from .history import score_path
-from .lanes import ELECTRON_FIELDS, FRACTION, GAS_CELL, LEFT, NX, NY, NZ, REMAINDER, UX, UY, UZ, VX, VY, VZ
+from .lanes import (
+    ELECTRON_FIELDS,
+    FRACTION,
+    GAS_CELL,
+    IDENTITY,
+    LEFT,
+    NX,
+    NY,
+    NZ,
+    REMAINDER,
+    UX,
+    UY,
+    UZ,
+    VX,
+    VY,
+    VZ,
+)
 from .lookup import ATTACHMENT, IONIZATION, SHARE_EQUAL, SHARE_UNIFORM, SPEED_CELLS
 from .streams import next_word, one_to_two
 
 
 @njit(forceinline=True)
-def swap_electrons(rows, a, b, lanes):
-    """Exchange the electrons of two lanes; streams and sums stay."""
-    for field in range(ELECTRON_FIELDS):
+def swap_electrons(rows, a, b, lanes, fields):
+    """Exchange the first `fields` rows of two lanes: ELECTRON_FIELDS, or COUPLED_FIELDS with the random streams."""
+    for field in range(fields):
         kept = load(rows, a + field * lanes)
         store(rows, a + field * lanes, load(rows, b + field * lanes))
         store(rows, b + field * lanes, kept)
@@ -125,7 +141,9 @@ def collide(count, alive, tables, history, work, window_time, measuring, lanes, 
             ejected = shared_energy(sharing[process], sharing_fraction[process], available, rows, lane, lanes)
             available -= ejected
             copy_electron(rows, lane, alive, lanes)
-            nx, ny, nz = isotropic_direction(next_word(rows, lane, lanes))
+            word = next_word(rows, lane, lanes)
+            store_word(rows, alive + IDENTITY * lanes, word)
+            nx, ny, nz = isotropic_direction(word)
             leave(lane, alive, math.sqrt(ejected), nx, ny, nz, electron_part, neutral_part, rows, lanes)
             score_path(alive, -1.0, elapsed, rows, history, lag_sums, point_sums, lanes, lags)
             alive += 1
@@ -137,7 +155,7 @@ def collide(count, alive, tables, history, work, window_time, measuring, lanes, 
 
 
 @njit(forceinline=True)
-def retire(ended, ended_count, active, alive, rows, lanes):
+def retire(ended, ended_count, active, alive, rows, lanes, fields):
     """Move electrons whose window is over behind the active ones, and drop the attached ones; return both counts.
 
     `ended` lists lanes in rising order; it is worked from the back, so that a lane not yet treated is never moved.
@@ -146,8 +164,8 @@ def retire(ended, ended_count, active, alive, rows, lanes):
         lane = ended[at]
         gone = load(rows, lane + LEFT * lanes) < 0.0
         active -= 1
-        swap_electrons(rows, lane, active, lanes)
+        swap_electrons(rows, lane, active, lanes, fields)
         if gone:
             alive -= 1
-            swap_electrons(rows, active, alive, lanes)
+            swap_electrons(rows, active, alive, lanes, fields)
     return active, alive

@@ -33,7 +33,8 @@ PATH = 0  # integral of v_z
 PATH_SQUARED = 1  # z^2 / 2: integral of z v_z
 PATH_ACROSS_SQUARED = 2  # (x^2 + y^2) / 2
 END_WEIGHT, END_R = 3, 4  # at window ends: 1 and R
-POINT_SUMS = 5
+MEMORIES, FAMILIES, EFFECTIVE_SIZE = 5, 6, 7  # see `ancestry`
+POINT_SUMS = 8
 
 
 @njit(forceinline=True)

@@ -1,6 +1,7 @@
 """Rows of the lane array. Row f of lane i is at index f * lanes + i; `lanes` is a compile-time constant.
 
-Electron fields are copied when an electron is copied or moved between lanes; sums and random streams never are.
+Electron fields are copied when an electron is copied or moved between lanes; sums never are, random streams only in
+coupled runs (see `coupled`).
 """
 
 # Electron fields
@@ -9,27 +10,31 @@ X, Y, Z = 3, 4, 5  # displacement since the start of the window
 LEFT = 6  # time left until the end of the window; negative marks an electron that was attached
 WEIGHT = 7
 SLOT = 8  # row of the displacement history (a whole number)
-ELECTRON_FIELDS = 9
+ANCESTOR = 9  # lane of its ancestor at the start of the memory (a whole number)
+IDENTITY = 10  # random word that names the electron, for coupled runs
+ELECTRON_FIELDS = 11
+
+# Random streams, four words each: for the flights, and for work of variable length. In coupled runs they move with the
+# electron, and so stand next to its fields.
+STREAM, SPARE_STREAM = 11, 15
+COUPLED_FIELDS = 19
 
 # Lane sums: integrals over the flights of a lane, times the weight, of 1, w^2 and z
-SUM_TIME, SUM_ENERGY, SUM_Z = 9, 10, 11
-
-# Random streams, four words each: for the flights, and for work of variable length
-STREAM, SPARE_STREAM = 12, 16
+SUM_TIME, SUM_ENERGY, SUM_Z = 19, 20, 21
 
 # What the flight pass tells the later passes of the same step
-FRACTION = 20  # position in the speed cell, 0 to 1
-INVERSE_M = 21  # weight / majorant of the mixture; 0 for a flight that was cut
-INVERSE_M_GAS = 22  # weight / majorant of the gas; likewise
-REMAINDER = 23  # what selects the process: uniform in the gas's majorant, less its elastic frequency
-UX, UY, UZ = 24, 25, 26  # velocity of the neutral
-VZ_BEFORE = 27  # v_z at the end of the flight, before the collision
-GAS_CELL = 28  # integer: gas * SPEED_CELLS + cell of the relative speed
-LAB_CELL = 29  # integer: cell of the electron's own speed, for the energy distribution
-OUTCOME = 30  # integer: CUT, NULL, ELASTIC or RARE
-NX, NY, NZ = 31, 32, 33  # direction after the collision
-RECOIL = 34  # warm gas: expected energy given up in elastic recoil x weight / majorant of the gas
-ROWS = 35
+FRACTION = 22  # position in the speed cell, 0 to 1
+INVERSE_M = 23  # weight / majorant of the mixture; 0 for a flight that was cut
+INVERSE_M_GAS = 24  # weight / majorant of the gas; likewise
+REMAINDER = 25  # what selects the process: uniform in the gas's majorant, less its elastic frequency
+UX, UY, UZ = 26, 27, 28  # velocity of the neutral
+VZ_BEFORE = 29  # v_z at the end of the flight, before the collision
+GAS_CELL = 30  # integer: gas * SPEED_CELLS + cell of the relative speed
+LAB_CELL = 31  # integer: cell of the electron's own speed, for the energy distribution
+OUTCOME = 32  # integer: CUT, NULL, ELASTIC or RARE
+NX, NY, NZ = 33, 34, 35  # direction after the collision
+RECOIL = 36  # warm gas: expected energy given up in elastic recoil x weight / majorant of the gas
+ROWS = 37
 
 CUT, NULL, ELASTIC, RARE = 0, 1, 2, 3
 

@@ -9,7 +9,7 @@ from numba import njit
 from .bits import store
 from .build import compiled, kernel_digest
 from .flight import isotropic_direction
-from .lanes import LEFT, ROWS, SLOT, SPARE_STREAM, STREAM, VX, VY, VZ, WEIGHT
+from .lanes import ANCESTOR, IDENTITY, LEFT, ROWS, SLOT, SPARE_STREAM, STREAM, VX, VY, VZ, WEIGHT
 from .streams import next_word, one_to_two, seeded_streams
 
 
@@ -33,6 +33,7 @@ def place(rows, size, lanes, energy_edges, cumulated):
         store(rows, lane + LEFT * lanes, 0.0)
         store(rows, lane + WEIGHT * lanes, 1.0)
         store(rows, lane + SLOT * lanes, float(lane))
+        store(rows, lane + ANCESTOR * lanes, float(lane))
 
 
 @cache
@@ -53,4 +54,5 @@ def launch(rows, start, size, lanes, energy_edges, cumulated):
     words = rows.view(np.uint64).reshape(ROWS, lanes)
     words[STREAM : STREAM + 4] = states[:, :lanes]
     words[SPARE_STREAM : SPARE_STREAM + 4] = states[:, lanes:]
+    words[IDENTITY] = states[0, :lanes]
     compiled_place()(rows, size, lanes, energy_edges, cumulated)

@@ -16,12 +16,17 @@ from .bits import double_of, load_word, store_word
 from .functions import ONE_BITS
 from .lanes import SPARE_STREAM
 
-_GOLDEN = np.uint64(0x9E3779B97F4A7C15)
+GOLDEN = np.uint64(0x9E3779B97F4A7C15)
+_MIX1 = np.uint64(0xBF58476D1CE4E5B9)
+_MIX2 = np.uint64(0x94D049BB133111EB)
 _U12 = np.uint64(12)
 _U17 = np.uint64(17)
 _U19 = np.uint64(19)
 _U20 = np.uint64(20)
 _U23 = np.uint64(23)
+_U27 = np.uint64(27)
+_U30 = np.uint64(30)
+_U31 = np.uint64(31)
 _U32 = np.uint64(32)
 _U41 = np.uint64(41)
 _U45 = np.uint64(45)
@@ -31,10 +36,18 @@ _LOW32 = np.uint64(0xFFFFFFFF)
 def splitmix_words(start: int, count: int) -> np.ndarray:
     """The first `count` outputs of SplitMix64 from state `start`; shape (count,), uint64."""
     with np.errstate(over="ignore"):
-        z = np.uint64(start & 0xFFFFFFFFFFFFFFFF) + _GOLDEN * np.arange(1, count + 1, dtype=np.uint64)
-        z = (z ^ (z >> np.uint64(30))) * np.uint64(0xBF58476D1CE4E5B9)
-        z = (z ^ (z >> np.uint64(27))) * np.uint64(0x94D049BB133111EB)
-        return z ^ (z >> np.uint64(31))
+        z = np.uint64(start & 0xFFFFFFFFFFFFFFFF) + GOLDEN * np.arange(1, count + 1, dtype=np.uint64)
+        z = (z ^ (z >> _U30)) * _MIX1
+        z = (z ^ (z >> _U27)) * _MIX2
+        return z ^ (z >> _U31)
+
+
+@njit(forceinline=True)
+def splitmix_output(z):
+    """The output of SplitMix64 at state `z` (uint64)."""
+    z = (z ^ (z >> _U30)) * _MIX1
+    z = (z ^ (z >> _U27)) * _MIX2
+    return z ^ (z >> _U31)
 
 
 def cohort_start(seed: int, stream_key: str, cohort: int) -> int:

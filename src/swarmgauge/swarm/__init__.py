@@ -16,6 +16,7 @@ _HOME = {
     "parse_accuracy": "targets",
     "point_key": "point_run",
     "simulate": "schedule",
+    "simulate_difference": "difference",
     "solve_two_term": "two_term",
 }
 __all__ = sorted(_HOME)

@@ -87,9 +87,7 @@ class CohortRun:
         self.work: Workspace = new_workspace(plan.lanes, plan.lags, len(plan.mixture.gases), len(tables.kind))
         start = cohort_start(plan.seed, plan.stream_key, index)
         launch(self.work.rows, start, plan.electrons, plan.lanes, plan.start_edges_eV, plan.start_cumulated)
-        self._kernel = compiled_windows(
-            plan.lanes, len(plan.mixture.gases), plan.mixture.temperature_K > 0.0, plan.target_weight is not None
-        )
+        self._kernel = compiled_windows(plan.lanes, len(plan.mixture.gases), plan.thermal, plan.upkeep)
         self.work.population[0] = plan.electrons
 
     def windows(self, count: int, measuring: bool, flights_per_window: float = 0.0) -> np.ndarray:

@@ -12,6 +12,7 @@ import numpy as np
 from swarmgauge.gas import Mixture
 from swarmgauge.gas.constants import SPEED_1_EV
 from swarmgauge.kernel.build import kernel_digest
+from swarmgauge.kernel.cohort import COMBED, COUPLED, SPLIT
 from swarmgauge.kernel.lanes import lane_count
 from swarmgauge.kernel.lookup import Tables
 
@@ -45,6 +46,7 @@ class Plan:
     window_time : kernel units. start_edges_eV, start_cumulated : (n + 1,), start distribution.
     relaxation_windows, measured_windows : dropped and used windows of a cohort.
     rare, target_weight : processes for which electrons are split, and the weights, (ENERGY_CELLS,); () and None else.
+    coupled_key : key of the random streams that coupled plans share; empty for a plan that stands alone.
     """
 
     mixture: Mixture
@@ -60,6 +62,7 @@ class Plan:
     window_scale: float = 1.0
     rare: tuple[str, ...] = ()
     target_weight: np.ndarray | None = None
+    coupled_key: str = ""
 
     @property
     def acceleration(self) -> float:
@@ -86,9 +89,23 @@ class Plan:
         """Tables of the kernel."""
         return build_tables(self.mixture, self.curves, self.acceleration, self.window_scale, self.target_weight)
 
+    @property
+    def upkeep(self) -> int:
+        """How the kernel keeps the size of the population."""
+        if self.coupled_key:
+            return COUPLED
+        return COMBED if self.target_weight is None else SPLIT
+
+    @property
+    def thermal(self) -> bool:
+        """Whether the kernel draws neutrals; coupled runs always do, so that both take the same random numbers."""
+        return self.mixture.temperature_K > 0.0 or bool(self.coupled_key)
+
     @cached_property
     def stream_key(self) -> str:
-        """Hash of the conditions, from which the random streams start."""
+        """What the random streams start from, besides seed and cohort: hash of the conditions, or the coupled key."""
+        if self.coupled_key:
+            return self.coupled_key
         return _hash({"mixture": self.mixture.canonical(), "field": _field(self.field)})
 
     def with_windows(self, relaxation: int, measured: int) -> "Plan":

@@ -66,6 +66,8 @@ class Point:
     worst : judged quantity furthest from its target and its error over the target.
     relaxation : what was cut off each cohort and how that was decided. deviations : (cohorts, quantities), jackknife
     deviations in the order of the estimates; sums of their products over cohorts are covariances.
+    ancestors, effective_size : electrons of one memory ago from which those of a cohort descend, and their effective
+    number W^2 / sum W_a^2; means over the cohorts. The bias of a finite cohort is of the order of its inverse.
     """
 
     conditions: Conditions
@@ -81,6 +83,8 @@ class Point:
     cpu_seconds: float
     relaxation: str = ""
     deviations: np.ndarray = field(default_factory=lambda: np.zeros((0, 0)))
+    ancestors: float = float("nan")
+    effective_size: float = float("nan")
     above_tables: dict[str, float] = field(default_factory=dict)
 
     def __getitem__(self, name: str) -> Estimate:

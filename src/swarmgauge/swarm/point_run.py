@@ -211,6 +211,7 @@ class PointRun:
         name, excess = max(((n, e) for n, (_, e) in judged.items()), key=lambda pair: pair[1], default=("", 0.0))
         status = "done" if excess <= 1.0 else ("target missed" if self.finished else "interrupted")
         above = reducer.time_above_tables(rows)
+        ancestors, effective_size = reducer.families(rows)
         return Point(
             conditions=Conditions(self.mixture, self.field, self.seed),
             estimates=estimates,
@@ -226,6 +227,8 @@ class PointRun:
             relaxation=f"{self.pilot.plan.relaxation_windows} windows cut: {self.pilot.note}",
             above_tables=above,
             deviations=deviations,
+            ancestors=ancestors,
+            effective_size=effective_size,
         )
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:

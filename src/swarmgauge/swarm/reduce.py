@@ -6,8 +6,10 @@ import numpy as np
 
 from swarmgauge.gas.constants import E_CHARGE, SPEED_1_EV, TOWNSEND
 from swarmgauge.kernel.history import (
+    EFFECTIVE_SIZE,
     END_R,
     END_WEIGHT,
+    FAMILIES,
     LAG_SUMS,
     LAG_TT,
     LAG_TT_R,
@@ -18,6 +20,7 @@ from swarmgauge.kernel.history import (
     LAG_Z_VZ,
     LAG_ZZ,
     LAG_ZZ_R,
+    MEMORIES,
     PATH,
     PATH_ACROSS_SQUARED,
     PATH_SQUARED,
@@ -198,6 +201,13 @@ class Reducer:
         for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
             bounds[name] = per_time
         return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}
+
+    def families(self, rows: np.ndarray) -> tuple[float, float]:
+        """Distinct ancestors, one memory ago, of a cohort's electrons, and their effective number; means over all."""
+        point = rows[:, self.layout.slices["point"]].sum(axis=0)
+        if point[MEMORIES] == 0.0:
+            return float("nan"), float("nan")
+        return float(point[FAMILIES] / point[MEMORIES]), float(point[EFFECTIVE_SIZE] / point[MEMORIES])
 
     def time_above_tables(self, rows: np.ndarray) -> dict[str, float]:
         """Share of the time spent above the last tabulated energy, for each process where it is not 0."""
