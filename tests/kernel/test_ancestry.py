@@ -1,9 +1,10 @@
-"""Families of a cohort, and coupled runs: identities, streams, resampling."""
+"""Families and growth of a cohort; coupled runs: identities, streams, resampling."""
 
 import numpy as np
 import pytest
 
 from swarmgauge.kernel.ancestry import count_families, found_families
+from swarmgauge.kernel.cohort import past_growth
 from swarmgauge.kernel.coupled import begin_streams, resample
 from swarmgauge.kernel.history import EFFECTIVE_SIZE, FAMILIES, MEMORIES, POINT_SUMS
 from swarmgauge.kernel.lanes import (
@@ -38,6 +39,16 @@ def test_families_by_hand():
     assert rows[ANCESTOR, :4].tolist() == [0, 1, 2, 3]
 
 
+def test_growth_over_a_memory_by_hand():
+    # three lags: the populations grew by 2, 3, 5 and 7 in turn, and only the last three count
+    growth = np.ones(4)
+    weight, weights = 1.0, []
+    for window, factor in enumerate((2.0, 3.0, 5.0, 7.0)):
+        weight = past_growth(100 * weight * factor, 100, window, growth, 3)
+        weights.append(weight)
+    assert weights == [2.0, 6.0, 30.0, 105.0]
+
+
 def identified(count):
     """Rows of `count` electrons with random identities; SLOT tells them apart."""
     rows = np.zeros((ROWS, LANES))
@@ -50,7 +61,7 @@ def identified(count):
 
 def resampled(rows, alive, size, window):
     mine = rows.copy()
-    count = resample(alive, size, window, mine.ravel(), np.zeros(ELECTRON_FIELDS * LANES), LANES)
+    count = resample(alive, size, 1.0, window, mine.ravel(), np.zeros(ELECTRON_FIELDS * LANES), LANES)
     return mine[:, :count]
 
 

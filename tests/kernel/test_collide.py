@@ -295,7 +295,7 @@ def combed(weights, size, seed):
     view = rows.reshape(ROWS, lanes)
     view[:ELECTRON_FIELDS] = np.arange(lanes)
     view[WEIGHT, : len(weights)] = weights
-    comb(len(weights), size, rows, np.zeros(ELECTRON_FIELDS * lanes), lanes)
+    comb(len(weights), size, float(np.sum(weights)), 1.0, rows, np.zeros(ELECTRON_FIELDS * lanes), lanes)
     return view[SLOT, :size].astype(int), view[:, :size]
 
 

@@ -40,6 +40,7 @@ class Workspace(NamedTuple):
     other_history: np.ndarray  # the same, target of the next window
     population: np.ndarray  # (2,) int64; electrons at the start of the next window, and its number
     families: np.ndarray  # (lanes,), see `ancestry`
+    growth: np.ndarray  # (lags + 1,), see `past_growth`
     rare: np.ndarray  # (lanes + 1,) int64
     ended: np.ndarray  # (lanes + 1,) int64
     histogram: np.ndarray  # (G * SPEED_CELLS * 2,)
@@ -60,6 +61,7 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
         other_history=np.zeros(lanes * 3 * lags),
         population=np.zeros(2, dtype=np.int64),
         families=np.zeros(lanes),
+        growth=np.ones(lags + 1),
         rare=np.zeros(lanes + 1, dtype=np.int64),
         ended=np.zeros(lanes + 1, dtype=np.int64),
         histogram=np.zeros(gases * SPEED_CELLS * 2),
@@ -73,15 +75,38 @@ def new_workspace(lanes: int, lags: int, gases: int, processes: int) -> Workspac
 
 
 @njit(forceinline=True)
-def comb(alive, size, rows, combed, lanes):
-    """Systematic resampling of `alive` weighted electrons to `size` electrons of weight 1, in lane order.
+def total_weight(alive, rows, lanes):
+    """Sum of the weights of the electrons alive, in lane order."""
+    total = 0.0
+    for lane in range(alive):
+        total += load(rows, lane + WEIGHT * lanes)
+    return total
+
+
+@njit(forceinline=True)
+def past_growth(total, size, window, growth, lags):
+    """Growth over the last memory, with that of the window that ends: the weight of the next one.
+
+    A population held at a finite size n has biases of order 1/n: it is thinned just where electrons multiply. Weighting
+    a state by how much the population grew on the way to it undoes that, exactly as far back as the product reaches (N.
+    Cerf and O. C. Martin, Phys. Rev. E 51, 3679 (1995)). growth : (lags + 1,), changed; factors of the last
+    windows, and their product, the weight that the window began with.
+    """
+    growth[window % lags] = total / (size * growth[lags])
+    product = 1.0
+    for k in range(lags):
+        product *= growth[k]
+    growth[lags] = product
+    return product
+
+
+@njit(forceinline=True)
+def comb(alive, size, total, weight, rows, combed, lanes):
+    """Systematic resampling of `alive` electrons of summed weight `total` to `size` of equal `weight`, in lane order.
 
     Teeth at (j + u) W / size, u one random number and W the total weight: every electron is taken weight x size / W
     times on average. Displacements since the start of the window begin anew.
     """
-    total = 0.0
-    for lane in range(alive):
-        total += load(rows, lane + WEIGHT * lanes)
     spacing = total / size
     tooth = (one_to_two(next_word(rows, 0, lanes)) - 1.0) * spacing
     lane = 0
@@ -95,7 +120,7 @@ def comb(alive, size, rows, combed, lanes):
         store(combed, j + X * lanes, 0.0)
         store(combed, j + Y * lanes, 0.0)
         store(combed, j + Z * lanes, 0.0)
-        store(combed, j + WEIGHT * lanes, 1.0)
+        store(combed, j + WEIGHT * lanes, weight)
         tooth += spacing
     for field in range(ELECTRON_FIELDS):
         for j in range(size):
@@ -157,7 +182,7 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
     """Run as many windows as `series` has rows; returns the status.
 
     tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
-    size : total weight at the start of every window, and number of electrons unless they are split; lags : windows in a
+    size : electrons at the start of every window, or their summed weight over `past_growth`; lags : windows in a
     displacement history; window_time and field in kernel units; measuring : whether histograms and counts are taken
     (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, upkeep :
     compile-time constants.
@@ -200,16 +225,18 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
         series[window, SERIES_ALIVE] = alive
         if alive == 0:
             return EXTINCT
+        total = total_weight(alive, work.rows, lanes)
+        weight = past_growth(total, size, work.population[1], work.growth, lags)
         work.population[1] += 1
         if work.population[1] % lags == 0:
             count_families(alive, work.rows, work.families, work.point_sums, lanes)
             found_families(alive, work.rows, lanes)
         if upkeep == SPLIT:
-            renormalise(alive, size, work.rows, lanes)
+            renormalise(alive, size * weight / total, work.rows, lanes)
         elif upkeep == COUPLED:
-            alive = resample(alive, size, work.population[1], work.rows, work.combed, lanes)
+            alive = resample(alive, size, weight, work.population[1], work.rows, work.combed, lanes)
         else:
-            comb(alive, size, work.rows, work.combed, lanes)
+            comb(alive, size, total, weight, work.rows, work.combed, lanes)
             alive = size
         work.population[0] = alive
         history, extended = extended, history

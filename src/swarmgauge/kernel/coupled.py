@@ -30,8 +30,8 @@ def begin_streams(lane, window, rows, lanes):
 
 
 @njit(forceinline=True)
-def resample(alive, size, window, rows, combed, lanes):
-    """Bring `alive` electrons of weight 1 to `size` on average; returns their number.
+def resample(alive, size, weight, window, rows, combed, lanes):
+    """Bring `alive` electrons to `size` on average, of equal `weight`; returns their number.
 
     Each is copied floor(size / alive + u) times, u its own random number; copies after the first get new identities.
     Displacements since the start of the window begin anew.
@@ -49,7 +49,7 @@ def resample(alive, size, window, rows, combed, lanes):
                 store_word(combed, count + IDENTITY * lanes, splitmix_output(word + np.uint64(copy) * GOLDEN))
             for axis in range(X, Z + 1):
                 store(combed, count + axis * lanes, 0.0)
-            store(combed, count + WEIGHT * lanes, 1.0)
+            store(combed, count + WEIGHT * lanes, weight)
             count += 1
     for field in range(ELECTRON_FIELDS):
         for j in range(count):

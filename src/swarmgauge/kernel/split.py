@@ -2,8 +2,8 @@
 
 An electron above the target weight of its energy is split into copies that share its weight, one far below it is kept
 with probability weight / target and then carries the target. Both leave every expected sum as it was (H. Kahn and
-T. E. Harris, NBS Appl. Math. Ser. 12, 27 (1951)). Between combs of equal weights there is none: at the end of a window
-the total weight is brought back to the size of the cohort, which takes out growth.
+T. E. Harris, NBS Appl. Math. Ser. 12, 27 (1951)). There is no comb: at the end of a window all weights are scaled to
+the size of the cohort, which takes out growth.
 """
 
 from numba import njit
@@ -29,6 +29,7 @@ def split_and_roulette(active, alive, tables, history, work, window_time, lanes,
     `history`). Electrons that lose the roulette are marked by a negative time left.
     """
     rows, target_weight = work.rows, tables.target_weight
+    ordinary = work.growth[lags]  # weight of an electron that is not split
     lag_sums, point_sums = work.lag_sums, work.point_sums
     for lane in range(active):
         weight = load(rows, lane + WEIGHT * lanes)
@@ -38,7 +39,7 @@ def split_and_roulette(active, alive, tables, history, work, window_time, lanes,
         vx = load(rows, lane + VX * lanes)
         vy = load(rows, lane + VY * lanes)
         vz = load(rows, lane + VZ * lanes)
-        target = load_table(target_weight, energy_cell(vx * vx + vy * vy + vz * vz))
+        target = ordinary * load_table(target_weight, energy_cell(vx * vx + vy * vy + vz * vz))
         if KEEP_ABOVE * target <= weight <= SPLIT_ABOVE * target:
             continue
         elapsed = window_time - left
@@ -64,12 +65,8 @@ def split_and_roulette(active, alive, tables, history, work, window_time, lanes,
 
 
 @njit(forceinline=True)
-def renormalise(alive, size, rows, lanes):
-    """Scale all weights to a total of `size`; displacements since the start of the window begin anew."""
-    total = 0.0
-    for lane in range(alive):
-        total += load(rows, lane + WEIGHT * lanes)
-    factor = size / total
+def renormalise(alive, factor, rows, lanes):
+    """Scale all weights; displacements since the start of the window begin anew."""
     for lane in range(alive):
         store(rows, lane + WEIGHT * lanes, factor * load(rows, lane + WEIGHT * lanes))
         store(rows, lane + X * lanes, 0.0)

@@ -286,8 +286,7 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
 
     values, errors, deviations = jackknife(everything, rows)
     known = dict(zip(names, values, strict=False))
-    total_time = float(rows[:, reducer.layout.slices["time"]].sum())
-    bounds = reducer.upper_bounds(total_time, known)
+    bounds = reducer.upper_bounds(rows, known)
     estimates = {}
     for place, name in enumerate(names):
         bound = bounds.get(name, math.nan)

@@ -185,9 +185,11 @@ class Reducer:
         result["energy_balance_residual"] = 1.0 - spent
         return result
 
-    def upper_bounds(self, total_time: float, names: dict[str, np.ndarray]) -> dict[str, float]:
-        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the total time (kernel units)."""
+    def upper_bounds(self, rows: np.ndarray, names: dict[str, np.ndarray]) -> dict[str, float]:
+        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the time of all electrons."""
         mixture = self.plan.mixture
+        windows, alive = (float(rows[:, self.layout.slices[name]].sum()) for name in ("windows", "alive"))
+        total_time = 0.5 * (windows * self.plan.electrons + alive) * self.plan.window_time
         per_time = UNSEEN_EVENTS / total_time * RATE_UNIT
         bounds: dict[str, float] = {}
         for curve in self.plan.curves + self.plan.passive_curves:
