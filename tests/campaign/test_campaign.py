@@ -198,7 +198,7 @@ def test_no_results_folder(tmp_path):
 def test_progress_is_told(campaign_of):
     told = []
     campaign_of(
-        on_start=lambda points, before: told.append((points, before)),
+        on_start=lambda points, before, workers, time_left: told.append((points, before)),
         on_progress=lambda run: told.append("step"),
         on_finished=lambda run: told.append(run.field.E_over_N_Td),
     )

@@ -62,9 +62,15 @@ def test_a_missed_target_is_marked_and_has_a_remedy():
     assert list(table([missed]))[3].endswith("2.00!")
     lines = list(remedies([point(), missed], max_minutes=5))
     assert " ".join(line.strip() for line in lines) == (
-        "! 100 Td: mean_energy has 2 times the error of 0.5 % asked for after 5 min. "
+        "! 100 Td: mean_energy has 2 times the error of 0.5 % asked for after 5 min of its own. "
         "Raise max_minutes_per_point to about 24, or ask for less."
     )
+
+
+def test_a_campaign_that_ran_out_of_time_is_told_to_take_more():
+    missed = point(cohorts=80, status="target missed", worst=("mean_energy", 2.0), wall_seconds=60.0)
+    lines = remedies([missed], max_minutes=5)
+    assert " ".join(line.strip() for line in lines).endswith("Raise max_minutes by about 4, or ask for less.")
 
 
 def test_a_process_never_seen_asks_for_an_absolute_target():

@@ -155,11 +155,8 @@ def test_no_steady_swarm(outcome):
 
 def test_the_clock_stops_a_point(flown):
     run = fed(flown, 3, {"drift_velocity_flux": 1e-7}, max_minutes=0.0)
-    run.start_clock()
-    run.check_clock()
     assert not run.finished  # three cohorts give no error worth stating
     run.add(3, *flown[1][3])
-    run.check_clock()
     assert run.finished
     point = run.result()
     assert point.status == "target missed"
@@ -168,13 +165,38 @@ def test_the_clock_stops_a_point(flown):
     assert point.warnings == ("only 4 of at least 20 cohorts: errors are rough; allow more minutes",)
 
 
+def test_the_clock_of_a_point_is_its_share_of_the_workers(flown):
+    run = fed(flown, 0, {"drift_velocity_flux": 1e-7}, max_minutes=1.0)
+    sums = [pair[0] for pair in flown[1]]
+    for index in range(5):
+        run.add(index, sums[index], 23.0, workers=2)
+        assert not run.finished
+    run.add(5, sums[5], 23.0, workers=2)  # 69 s at two workers
+    assert run.finished
+    assert run.result().wall_seconds == 69.0
+    assert run.result().cpu_seconds == 138.0
+    again = PointRun(RAMP, FIELD, accuracy={"drift_velocity_flux": 1e-7}, max_minutes=1.0, state=run.state())
+    again.add(6, sums[6], 60.0, workers=2)
+    assert not again.finished  # a new call has a new clock
+
+
+def test_the_time_left_follows_the_error(flown):
+    run = fed(flown, 20, {"drift_velocity_flux": 1e-7})
+    excess = run.worst[1]
+    cost = run.cpu_seconds / 20
+    for factor, total in ((0.9, 20), (1.3, 40), (2.7, 160)):
+        wanted = {"drift_velocity_flux": 1e-7 * excess / factor}
+        left = fed(flown, 20, wanted).seconds_left
+        assert left == pytest.approx((total - 20) * cost, rel=1e-9)
+    assert math.isnan(fed(flown, 1).seconds_left)
+
+
 def test_the_clock_of_the_campaign_stops_a_point(flown):
     run = fed(flown, 25, {"drift_velocity_flux": 1e-7}, max_minutes=100.0)
-    run.start_clock()
-    run.check_clock()
     assert not run.finished
-    run.check_clock(stop=True)
+    assert run.stop()
     assert run.finished
+    assert not run.stop()
     assert run.result().status == "target missed"
     assert run.result().cohorts == 25
     assert run.result().warnings == ()

@@ -1,5 +1,6 @@
 """Many points over one executor: equal bits, interruption, clocks."""
 
+import math
 from concurrent.futures import ProcessPoolExecutor, ThreadPoolExecutor
 from multiprocessing import get_context
 
@@ -9,7 +10,7 @@ from swarm.test_point_run import same
 from swarmgauge.gas import InputError, Mixture
 from swarmgauge.swarm.field import Field
 from swarmgauge.swarm.point_run import PointRun
-from swarmgauge.swarm.schedule import drive, simulate
+from swarmgauge.swarm.schedule import PREPARE, _Work, drive, seconds_left, simulate
 
 LOOSE = {"mean_energy": 0.1}
 
@@ -140,3 +141,63 @@ def test_fields_that_do_not_act_yet_are_refused(more):
 def test_no_field_and_no_temperature():
     with pytest.raises(InputError, match="temperature_K = 0"):
         simulate(Mixture({"model-ramp": 1.0}), Field(0.0), accuracy=LOOSE)
+
+
+class FakeRun:
+    """A run that wants 20 cohorts and then some more."""
+
+    def __init__(self, name, left):
+        self.name, self.left = name, left
+        self.pilot, self.finished, self.cohorts, self.cpu_seconds_now = None, False, 0, 0.0
+
+    @property
+    def seconds_left(self):
+        return self.left if self.cohorts >= 20 else math.nan
+
+    def missing(self):
+        return list(range(self.cohorts, 20 if self.cohorts < 20 else 40))
+
+
+def test_first_cohorts_in_order_then_the_longest_point_first():
+    names = {"a": 1.0, "b": 9.0, "c": 5.0}
+    work = _Work([FakeRun(name, left) for name, left in names.items()])
+    given = []
+    for _ in range(3):  # nothing but pilots can be begun
+        run, index = work.next_piece()
+        given.append((run.name, index))
+        run.pilot = "there"
+    assert given == [("a", PREPARE), ("a", 0), ("a", 1)]
+    order = []
+    while len(order) < 80:
+        run, index = work.next_piece()
+        run.pilot = "there"
+        if index != PREPARE:
+            run.cohorts = max(run.cohorts, index + 1)
+        order.append(run.name)
+    assert "".join(order) == "a" * 18 + "b" * 21 + "c" * 21 + "b" * 20
+
+
+def test_points_not_opened_count_as_the_mean_of_the_others():
+    runs = [FakeRun(name, left) for name, left in (("a", 10.0), ("b", 30.0), ("c", 0.0), ("d", 0.0))]
+    assert math.isnan(seconds_left(runs, 2))
+    for run in runs[:2]:
+        run.cohorts, run.cpu_seconds_now = 20, 5.0
+    # left 10 + 30; a point costs (40 + 5 + 5) / 2 in all, and two are not opened; two workers
+    assert seconds_left(runs, 2) == (40.0 + 2 * 25.0) / 2
+
+
+def test_a_campaign_that_runs_out_of_time_has_something_of_every_point(monkeypatch):
+    mine = runs(1, {"mean_energy": 1e-7})
+
+    class Clock:
+        """An hour passes once the last run has its 22nd cohort."""
+
+        @staticmethod
+        def monotonic():
+            return 3600.0 if mine[-1].cohorts >= 22 else 0.0
+
+    monkeypatch.setattr("swarmgauge.swarm.schedule.time", Clock)
+    with ThreadPoolExecutor(2) as executor:
+        drive(mine, executor, workers=2, max_minutes=1.0)
+    assert all(run.result().status == "target missed" for run in mine)
+    assert all(run.cohorts >= 20 for run in mine)

@@ -11,7 +11,7 @@ from pathlib import Path
 
 from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.point_run import PointRun, point_key
-from swarmgauge.swarm.schedule import drive
+from swarmgauge.swarm.schedule import drive, seconds_left
 
 from .provenance import provenance
 from .results import COEFFICIENTS, DISTRIBUTIONS, PROVENANCE, coefficients_csv, distributions_csv
@@ -62,15 +62,16 @@ def run_campaign(
     workers: int | None = None,
     max_minutes: float | None = None,
     executor: Executor | None = None,
-    on_start: Callable[[int, int], None] | None = None,
+    on_start: Callable[[int, int, int, Callable[[], float]], None] | None = None,
     on_progress: Watch | None = None,
     on_finished: Watch | None = None,
 ) -> Outcome:
     """Compute what is missing in a results folder and write its tables.
 
     workers : at work at a time; the usable cores. max_minutes : of wall clock, instead of what the run file says.
-    executor : where cohorts are computed; threads. on_start(points, finished before), on_progress(run) and
-    on_finished(run) tell how it goes. Ctrl-C ends it early: what is there is kept and counts next time.
+    executor : where cohorts are computed; threads. on_start(points, finished before, workers, time left), the last a
+    function that gives seconds, on_progress(run) and on_finished(run) tell how it goes. Ctrl-C ends it early: what is
+    there is kept and counts next time.
     Raises FolderError where the folder is in use or holds other things, OSError where it cannot be written.
     """
     begin = time.monotonic()
@@ -78,8 +79,9 @@ def run_campaign(
     with store.lock():
         runs = [_prepare(run_file, place, store) for place in range(len(run_file.points))]
         before = {run.key for run in runs if run.finished}
+        at_work = workers or usable_cores()
         if on_start:
-            on_start(len(runs), len(before))
+            on_start(len(runs), len(before), at_work, lambda: seconds_left(runs, at_work))
 
         def keep(run: PointRun) -> None:
             if run.key not in before:
@@ -93,7 +95,7 @@ def run_campaign(
                 drive(
                     runs,
                     pool,
-                    workers=workers or usable_cores(),
+                    workers=at_work,
                     max_minutes=max_minutes or run_file.max_minutes,
                     on_progress=on_progress,
                     on_finished=keep,

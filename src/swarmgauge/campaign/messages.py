@@ -113,10 +113,14 @@ def _remedy(point: Point, max_minutes: float) -> str:
     asked = f" of {status.target}" if status is not None else ""
     if not math.isfinite(excess):
         return f'{name} was never seen. Raise max_minutes_per_point, or give its target an "abs".'
-    minutes = max(point.wall_seconds / 60.0, max_minutes) * excess**2
+    spent = point.wall_seconds / 60.0
+    needed = 1.2 * spent * excess**2
+    raised = f"max_minutes_per_point to about {math.ceil(needed)}"
+    if spent < max_minutes:  # the campaign's limit came first
+        raised = f"max_minutes by about {max(needed - spent, 0.1):.1g}"
     return (
-        f"{name} has {excess:.2g} times the error{asked} asked for after {point.wall_seconds / 60.0:.2g} min. "
-        f"Raise max_minutes_per_point to about {math.ceil(1.2 * minutes)}, or ask for less."
+        f"{name} has {excess:.2g} times the error{asked} asked for after {spent:.2g} min of its own. "
+        f"Raise {raised}, or ask for less."
     )
 
 

@@ -26,7 +26,7 @@ class Pilot:
 
     plan : with its windows set, or None where there is no steady swarm; outcome : "steady", "runaway" or "extinct".
     stretch_energies : (n,), eV, mean energy of successive stretches of one memory each. note : how the cut was decided.
-    two_term : the solution that the plan was made from, where it is at hand.
+    two_term : the solution that the plan was made from, where it is at hand. cpu_seconds : what it took.
     """
 
     plan: Plan | None
@@ -34,6 +34,7 @@ class Pilot:
     stretch_energies: np.ndarray
     note: str
     two_term: TwoTerm | None = None
+    cpu_seconds: float = 0.0
 
 
 def fly_pilot(plan: Plan) -> Pilot:

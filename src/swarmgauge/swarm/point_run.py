@@ -22,6 +22,7 @@ from .targets import parse_accuracy, worst
 from .two_term import TwoTerm
 
 FIRST_COHORTS = 20
+LARGEST_COUNT = 1e9  # of cohorts that is told
 FEWEST_COHORTS = 4  # below these the clock cannot stop a point: no error could be stated
 LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on unmentioned
 SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, one that has not was cut
@@ -29,8 +30,10 @@ SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, o
 
 def prepare(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = ()) -> Pilot:
     """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor."""
+    begin = time.thread_time()
     two_term = solved(mixture, field)
-    return replace(fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare)), two_term=two_term)
+    pilot = fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare))
+    return replace(pilot, two_term=two_term, cpu_seconds=time.thread_time() - begin)
 
 
 def point_key(mixture: Mixture, field: Field, seed: int, accuracy: Mapping[str, Any] | None = None) -> str:
@@ -41,8 +44,8 @@ def point_key(mixture: Mixture, field: Field, seed: int, accuracy: Mapping[str, 
 class PointRun:
     """A point under way. `drive` feeds it; `result` may be asked for at any time after the first cohorts.
 
-    mixture, field, seed, accuracy : as for `simulate`. max_minutes : wall clock for this point. state : of an earlier
-    run of the same key, to go on from.
+    mixture, field, seed, accuracy : as for `simulate`. max_minutes : of its share of the wall clock, what the point
+    would take with all workers to itself. state : of an earlier run of the same key, to go on from.
     """
 
     def __init__(
@@ -64,7 +67,8 @@ class PointRun:
         self.finished = False
         self.cpu_seconds = 0.0
         self.wall_seconds = 0.0
-        self._begin: float | None = None
+        self.cpu_seconds_now = 0.0  # without those of the state
+        self._wall_seconds_before = 0.0
         self._sums: dict[int, np.ndarray] = {}
         self._wanted = FIRST_COHORTS
         self._point: Point | None = None
@@ -80,11 +84,6 @@ class PointRun:
             return []
         return [index for index in range(self._wanted) if index not in self._sums]
 
-    def start_clock(self) -> None:
-        """Begin counting wall time, at the first piece of work."""
-        if self._begin is None:
-            self._begin = time.monotonic()
-
     def set_pilot(self, pilot: Pilot) -> None:
         """Take the pilot's answer; without a steady swarm the point is finished."""
         self.pilot = pilot
@@ -92,30 +91,40 @@ class PointRun:
         if pilot.plan is None:
             self._finish()
 
-    def add(self, index: int, sums: np.ndarray, cpu_seconds: float) -> None:
-        """Take a cohort; when all that are wanted are there, judge, and ask for as many again if a target is missed."""
+    def add(self, index: int, sums: np.ndarray, cpu_seconds: float, workers: int = 1) -> None:
+        """Take a cohort; when all that are wanted are there, judge, and ask for as many again if a target is missed.
+
+        A cohort that comes after the end is not taken: what has been handed over stays as it was.
+        """
+        if self.finished:
+            return
         self._sums[index] = sums
-        self.cpu_seconds += cpu_seconds
         self._point = None
-        if not self.finished and not self.missing():
+        self.spend(cpu_seconds, workers)
+        if not self.finished and not self.missing():  # the clock may have ended it
             if self.worst[1] <= 1.0:
                 self._finish()
             else:
                 self._wanted *= 2
 
-    def check_clock(self, stop: bool = False) -> None:
-        """Finish with what is there if the time of the point, or (stop) of the campaign, is over."""
-        if self.finished or self._begin is None:
-            return
-        over = time.monotonic() - self._begin > 60.0 * self.max_minutes
-        if (over or stop) and self.cohorts >= FEWEST_COHORTS:
-            self._finish()
+    def spend(self, cpu_seconds: float, workers: int) -> None:
+        """Count the time of a piece of work; finish with what is there if the time of the point is over."""
+        self.cpu_seconds += cpu_seconds
+        self.cpu_seconds_now += cpu_seconds
+        self.wall_seconds += cpu_seconds / workers
+        if self.wall_seconds - self._wall_seconds_before > 60.0 * self.max_minutes:
+            self.stop()
+
+    def stop(self) -> bool:
+        """Finish with what is there, if that is enough to state errors; returns whether this ended the run."""
+        if self.finished or self.cohorts < FEWEST_COHORTS:
+            return False
+        self._finish()
+        return True
 
     def _finish(self) -> None:
         self.finished = True
-        if self._begin is not None:
-            self.wall_seconds += time.monotonic() - self._begin
-            self._begin = None
+        self._point = None
 
     # What is known
 
@@ -133,6 +142,22 @@ class PointRun:
         if self.cohorts < 2 or self.pilot is None or self.pilot.plan is None:
             return "", math.nan
         return self.result().worst
+
+    @property
+    def seconds_left(self) -> float:
+        """CPU time until the targets are met, by the present errors; NaN as long as nothing can be told, 0 at the end.
+
+        Errors fall with the root of the cohorts, which come in rounds of 20, 40, 80, ...
+        """
+        if self.finished:
+            return 0.0
+        count, (_, excess) = self.cohorts, self.worst
+        if count < 2 or self.cpu_seconds == 0.0:
+            return math.nan
+        total = FIRST_COHORTS
+        while total < min(count * excess**2, LARGEST_COUNT):
+            total *= 2
+        return (max(total, self._wanted) - count) * self.cpu_seconds / count
 
     def state(self) -> dict[str, Any]:
         """All that is needed to go on later: sums of every cohort and what the pilot decided."""
@@ -165,6 +190,7 @@ class PointRun:
             return
         plan = None
         self.cpu_seconds, self.wall_seconds = state["cpu_seconds"], state["wall_seconds"]
+        self._wall_seconds_before = self.wall_seconds
         if state["outcome"] == "steady":
             plan = Plan(
                 self.mixture,
@@ -195,7 +221,7 @@ class PointRun:
 
     def result(self) -> Point:
         """The point as far as it is known."""
-        if self._point is None or (self._point.status == "interrupted") == self.finished:
+        if self._point is None:
             self._point = self._build()
         return self._point
 

@@ -1,7 +1,9 @@
 """Running points: cohorts of many points over one executor."""
 
+import math
 import os
 import time
+from collections import deque
 from collections.abc import Callable, Mapping, Sequence
 from concurrent.futures import FIRST_COMPLETED, Executor, Future, ThreadPoolExecutor, wait
 from typing import Any
@@ -11,10 +13,11 @@ from swarmgauge.gas import Mixture
 from .cohort import run_cohort
 from .field import Field
 from .point import Point
-from .point_run import PointRun, prepare
+from .point_run import FIRST_COHORTS, PointRun, prepare
 
 Watch = Callable[[PointRun], None]
 PREPARE = -1  # stands for the pilot in the list of work
+MOST_OPEN = 256  # points under way at once: each holds the sums of its cohorts, half a megabyte and more
 
 
 def drive(
@@ -26,38 +29,40 @@ def drive(
     on_progress: Watch | None = None,
     on_finished: Watch | None = None,
 ) -> None:
-    """Compute all cohorts that the runs want, in their order, keeping `workers` + 1 pieces of work under way.
+    """Compute all cohorts that the runs want, keeping `workers` + 1 pieces of work under way.
 
+    Which piece comes next decides only when the campaign ends, never what comes out; see `_Work`.
     on_progress(run) after every cohort, on_finished(run) once for every run, also for those finished before.
     max_minutes : wall clock for all; what is unfinished then is finished with what it has, if that is enough.
     An exception, Ctrl-C too, cancels what is queued and is raised again; finished runs were handed over before.
     """
     end = None if max_minutes is None else time.monotonic() + 60.0 * max_minutes
+    work = _Work(runs)
     under_way: dict[Future, tuple[PointRun, int]] = {}
-    reported: set[int] = set()
 
-    def report() -> None:
-        for run in runs:
-            if run.finished and id(run) not in reported:
-                reported.add(id(run))
-                if on_finished:
-                    on_finished(run)
+    def hand_over(run: PointRun) -> None:
+        if run.finished and on_finished:
+            on_finished(run)
 
     try:
-        report()
+        for run in runs:
+            hand_over(run)
         while True:
             over = end is not None and time.monotonic() > end
-            for run in runs:
-                run.check_clock(stop=over)
-            report()
-            if not over:
-                _submit(runs, executor, under_way, workers + 1)
+            if over:
+                for run in work.stop():
+                    hand_over(run)
+            while not over and len(under_way) <= workers and (piece := work.next_piece()):
+                under_way[_submitted(executor, *piece)] = piece
             if not under_way:
-                break
+                return
             done, _ = wait(under_way, timeout=1.0, return_when=FIRST_COMPLETED)
             for future in done:
                 run, index = under_way.pop(future)
-                _take(run, index, future)
+                was_finished = run.finished
+                work.take(run, index, future.result(), workers)
+                if not was_finished:
+                    hand_over(run)
                 if on_progress and run.cohorts > 1:
                     on_progress(run)
             if over:
@@ -67,35 +72,84 @@ def drive(
         for future in under_way:
             future.cancel()
         raise
-    report()
 
 
-def _submit(runs: Sequence[PointRun], executor: Executor, under_way: dict, most: int) -> None:
-    """Fill up with work of the earliest runs."""
-    for run in runs:
-        if len(under_way) >= most:
-            return
-        if run.finished:
-            continue
-        mine = {index for other, index in under_way.values() if other is run}
-        if run.pilot is None or run.pilot.plan is None:
-            if PREPARE not in mine:
-                run.start_clock()
-                under_way[executor.submit(prepare, run.mixture, run.field, run.seed, run.rare)] = (run, PREPARE)
-            continue
-        for index in run.missing():
-            if len(under_way) >= most:
-                return
-            if index not in mine:
-                run.start_clock()
-                under_way[executor.submit(run_cohort, run.pilot.plan, index)] = (run, index)
-
-
-def _take(run: PointRun, index: int, future: Future) -> None:
+def _submitted(executor: Executor, run: PointRun, index: int) -> Future:
     if index == PREPARE:
-        run.set_pilot(future.result())
-    else:
-        run.add(index, *future.result())
+        return executor.submit(prepare, run.mixture, run.field, run.seed, run.rare)
+    assert run.pilot is not None
+    assert run.pilot.plan is not None
+    return executor.submit(run_cohort, run.pilot.plan, index)
+
+
+class _Work:
+    """Which piece comes next, so that the campaign ends soonest and a stopped one has something of every point.
+
+    Points are opened in order and get their first cohorts in order. Then every one that missed its target has an
+    estimate of the time it still needs, and the one that needs most goes first: at the end no worker waits while a long
+    point, begun too late, crawls through its last rounds.
+    """
+
+    def __init__(self, runs: Sequence[PointRun]) -> None:
+        self._waiting = deque(run for run in runs if not run.finished)
+        self._open: list[PointRun] = []
+        self._given: dict[int, set[int]] = {}  # indices under way, by id of the run
+
+    def next_piece(self) -> tuple[PointRun, int] | None:
+        """A run and the index of its cohort, or PREPARE; nothing if all that is wanted now is under way."""
+        missing = [(run, self._missing(run)) for run in self._open]
+        wanted = [(run, indices) for run, indices in missing if indices]
+        first = next((pair for pair in wanted if pair[0].cohorts < FIRST_COHORTS), None)
+        if first is None and self._waiting and len(self._open) < MOST_OPEN:
+            run = self._waiting.popleft()
+            self._open.append(run)
+            self._given[id(run)] = set()
+            first = (run, self._missing(run))
+        if first is None and wanted:
+            first = max(wanted, key=lambda pair: pair[0].seconds_left)
+        if first is None:
+            return None
+        run, indices = first
+        self._given[id(run)].add(indices[0])
+        return run, indices[0]
+
+    def _missing(self, run: PointRun) -> list[int]:
+        wanted = [PREPARE] if run.pilot is None else run.missing()
+        given = self._given[id(run)]
+        return [index for index in wanted if index not in given]
+
+    def take(self, run: PointRun, index: int, answer: Any, workers: int) -> None:
+        """Hand a run the answer to one of its pieces. A point's clock is its share of the workers' time."""
+        self._given[id(run)].discard(index)
+        if index == PREPARE:
+            run.spend(answer.cpu_seconds, workers)
+            run.set_pilot(answer)
+        else:
+            sums, cpu_seconds = answer
+            run.add(index, sums, cpu_seconds, workers)
+        if run.finished and run in self._open:
+            self._open.remove(run)
+
+    def stop(self) -> list[PointRun]:
+        """Finish what can be finished with what it has; returns these runs. Nothing new is begun."""
+        self._waiting.clear()
+        stopped = [run for run in self._open if run.stop()]
+        self._open = [run for run in self._open if not run.finished]
+        return stopped
+
+
+def seconds_left(runs: Sequence[PointRun], workers: int) -> float:
+    """Wall clock until all runs are finished, as far as can be told now; NaN before the first estimate.
+
+    Points not yet opened are taken to cost as much as the mean of the others.
+    """
+    begun = [run for run in runs if run.cpu_seconds_now > 0.0 and math.isfinite(run.seconds_left)]
+    if not begun:
+        return math.nan
+    left = sum(run.seconds_left for run in begun)
+    mean = (left + sum(run.cpu_seconds_now for run in begun)) / len(begun)
+    unknown = sum(not run.finished for run in runs) - sum(not run.finished for run in begun)
+    return (left + unknown * mean) / workers
 
 
 def simulate(
