@@ -59,7 +59,7 @@ def test_nothing_is_wanted_before_the_pilot(flown):
 
 
 def test_a_point_is_judged_at_20_40_and_80_cohorts_only(flown):
-    reached = {n: fed(flown, n, {"drift_velocity_flux": 0.2}).result()["drift_velocity_flux"] for n in (20, 40, 80)}
+    reached = {n: fed(flown, n, {"drift_velocity_flux": 1e-7}).result()["drift_velocity_flux"] for n in (20, 40, 80)}
     relative = {n: e.standard_error / e.value for n, e in reached.items()}
     for stop, others in ((20, ()), (40, (20,)), (80, (20, 40))):
         target = relative[stop] * 1.000001
