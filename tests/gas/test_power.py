@@ -1,4 +1,4 @@
-"""The strict power against decimal arithmetic of 40 digits, and its bits under other instruction sets."""
+"""Strict powers and exponentials against decimal arithmetic of 40 digits, and their bits under other instructions."""
 
 import decimal
 import os
@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from numpy._core._multiarray_umath import __cpu_dispatch__, __cpu_features__
 
-from swarmgauge.gas.power import strict_power
+from swarmgauge.gas.power import strict_exp, strict_power
 
 EXPONENTS = [-3.0, -1.77, -1.0, -0.9, -0.5, 0.0, 0.33, 0.5, 1.0, 2.0, 2.53]
 
@@ -57,16 +57,36 @@ def test_ends_and_shape():
     assert strict_power(np.ones((2, 3)), -0.9).shape == (2, 3)
 
 
+@settings(derandomize=True)
+@given(st.floats(-745.0, 709.0))
+def test_any_exponential(x):
+    with decimal.localcontext() as context:
+        context.prec = 40
+        reference = decimal.Decimal(x).exp()
+    value = float(strict_exp(np.array(x)))
+    if x > -708.0:
+        assert float(abs(decimal.Decimal(value) / reference - 1)) < 1e-15
+    else:  # numbers below 2.2e-308 have fewer digits
+        assert abs(value - float(reference)) <= 1e-323
+
+
+def test_ends_of_the_exponential():
+    ends = np.array([-np.inf, -800.0, 0.0, 710.0, np.inf])
+    np.testing.assert_array_equal(strict_exp(ends), [0.0, 0.0, 1.0, np.inf, np.inf])
+    assert strict_exp(np.ones((2, 3))).shape == (2, 3)
+
+
 PROGRAM = """
 import hashlib, json
 import numpy as np
 from swarmgauge.gas import Mixture
-from swarmgauge.gas.power import strict_power
+from swarmgauge.gas.power import strict_exp, strict_power
 digest = hashlib.sha256()
 for exponent in (-1.77, -0.9, 0.33, 2.53):
     digest.update(strict_power(1e-8 * np.cumprod(np.full(3000, 1.01)), exponent).tobytes())
+digest.update(strict_exp(np.arange(-60000, 6000) / 97.0).tobytes())
 for name in ("nitrogen-phelps1985", "carbon-monoxide-land1978"):
-    mixture = Mixture({name: 1.0})
+    mixture = Mixture({name: 1.0}, temperature_K=900.0)
     digest.update(json.dumps(mixture.canonical()).encode())
     energy = np.arange(1, 40001) / 3.0
     for process in mixture.acting(mixture.gases[0]):

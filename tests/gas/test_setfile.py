@@ -116,7 +116,9 @@ def processes(draw, name):
     more = {"sharing": draw(sharings)} if kind == "ionization" else {}
     more |= {"third_body": draw(bodies)} if kind == "attachment" else {}
     if kind == "excitation":
-        more |= {"degeneracy_lower": draw(st.none() | positive), "degeneracy_upper": draw(st.none() | positive)}
+        weights = draw(st.none() | st.tuples(st.floats(1e-9, 1e6), st.floats(1e-9, 1e6)))
+        more |= {"vibrational": draw(st.booleans())}
+        more |= dict(zip(("degeneracy_lower", "degeneracy_upper"), weights, strict=True)) if weights else {}
     return Process(
         id=name,
         kind=kind,

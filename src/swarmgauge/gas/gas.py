@@ -6,6 +6,7 @@ from typing import Any, Literal
 
 from .constants import ATOMIC_MASS, E_MASS
 from .errors import ProcessError, suggestion
+from .levels import check_ladder
 from .process import Process, check_name
 from .total import Clipping, subtract_from_total
 
@@ -123,13 +124,7 @@ def _check_processes(processes: tuple[Process, ...]) -> None:
             f"process {', '.join(elastic)}: more than one elastic process would count collisions twice. "
             "Keep one, or mark the others passive = true."
         )
-    levels = [process.id for process in processes if process.kind == "excitation"]
-    for process in processes:
-        if process.lower is not None and (process.lower not in levels or process.lower == process.id):
-            raise ProcessError(
-                f'process {process.id}: lower = "{process.lower}" is not another excitation of this set. '
-                f"Use the id of one, or leave it out for the ground state.{suggestion(process.lower, levels)}"
-            )
+    check_ladder(processes)
 
 
 def _acting_elastic(

@@ -9,6 +9,7 @@ import numpy as np
 from .constants import BOLTZMANN
 from .errors import MixtureError, suggestion
 from .gas import Gas
+from .levels import LEAST_POPULATION, Populations, check_level_fractions, populations
 from .library import load_named_or_path
 from .process import Process
 
@@ -25,7 +26,10 @@ class Mixture:
         file, or a Gas. A set with fraction 0 is a trace: its rates are averaged and it does not act.
     temperature_K : >= 0; 0 is the cold gas.
     pressure_Pa : > 0; needed where three-body attachment takes part. N = p / kT.
-    leave_out : "<set>/<process>" of processes that shall not exist here.
+    leave_out : "<set>/<process>" of processes that shall not exist here; their levels stay populated.
+    vibrational_temperature_K : of the levels that sets mark as vibrational; None for the gas temperature.
+    level_fractions : "<set>/<process>" to the fraction of the set's molecules in the level to which the process leads;
+        the other levels share the rest as at their temperatures.
 
     Attributes
     ----------
@@ -41,6 +45,8 @@ class Mixture:
         temperature_K: float = 0.0,
         pressure_Pa: float | None = None,
         leave_out: Iterable[str] = (),
+        vibrational_temperature_K: float | None = None,
+        level_fractions: Mapping[str, float] | None = None,
     ) -> None:
         pairs = [(key if isinstance(key, Gas) else load_named_or_path(key), x) for key, x in fractions.items()]
         pairs.sort(key=lambda pair: pair[0].name)
@@ -56,6 +62,9 @@ class Mixture:
         }
         self._check_elastic()
         self._check_third_bodies()
+        self.vibrational_temperature_K = self._checked_vibrational_temperature(vibrational_temperature_K)
+        self.level_fractions = self._checked_level_fractions(level_fractions or {})
+        self._populations = {gas.name: self._populations_of(gas) for gas in self.gases}
 
     @property
     def density_m3(self) -> float | None:
@@ -65,6 +74,19 @@ class Mixture:
     def acting(self, gas: Gas) -> tuple[Process, ...]:
         """The processes of one of the gases that are not left out, passive ones too, by threshold."""
         return self._acting[gas.name]
+
+    def populations(self, gas: Gas) -> Populations:
+        """Share of the molecules of one of the gases in each of its levels, by process id; None is the ground state."""
+        return dict(self._populations[gas.name])
+
+    def share_hit(self, gas: Gas, process: Process) -> float:
+        """Share of the gas's molecules that a process can happen to: those in its lower level, or all."""
+        return self._populations[gas.name][process.lower] if process.from_level else 1.0
+
+    def share_excited(self, gas: Gas, process: Process) -> float:
+        """Share of the gas's molecules that can undergo the reverse of a process; 0 where that is not worth a table."""
+        share = self._populations[gas.name][process.id] if process.is_level else 0.0
+        return share if share >= LEAST_POPULATION else 0.0
 
     def third_bodies(self, gas: Gas, process: Process) -> dict[str, float]:
         """Set name to efficiency of the gases in this mixture that can be the third body of a process of `gas`."""
@@ -87,8 +109,12 @@ class Mixture:
         return math.fsum(shares) * self.density_m3
 
     def describe(self) -> str:
-        """The gases with their fractions, as "0.8 nitrogen-phelps1985 + 0.2 oxygen-lawton1978"."""
-        return " + ".join(f"{x:.6g} {gas.name}" for gas, x in zip(self.gases, self.fractions, strict=True))
+        """The gases with their fractions, as "0.8 nitrogen-phelps1985 + 0.2 oxygen-lawton1978", and given levels."""
+        levels = [f"{x:.6g} in {name}" for name, x in self.level_fractions.items()]
+        if self.vibrational_temperature_K is not None:
+            levels.insert(0, f"vibration {self.vibrational_temperature_K:g} K")
+        gases = " + ".join(f"{x:.6g} {gas.name}" for gas, x in zip(self.gases, self.fractions, strict=True))
+        return f"{gases} ({'; '.join(levels)})" if levels else gases
 
     def canonical(self) -> dict[str, Any]:
         """All that acts on a swarm, as plain numbers and names that JSON can hold; equal physics gives equal ones."""
@@ -100,7 +126,21 @@ class Mixture:
             }
             for gas, x in zip(self.gases, self.fractions, strict=True)
         ]
-        return {"temperature_K": self.temperature_K, "pressure_Pa": self.pressure_Pa, "gases": gases}
+        return {
+            "temperature_K": self.temperature_K,
+            "pressure_Pa": self.pressure_Pa,
+            "gases": gases,
+            **self._canonical_levels(),
+        }
+
+    def _canonical_levels(self) -> dict[str, Any]:
+        """The populations, of the gases that are not all in the ground state."""
+        excited = {
+            name: {level or "": share for level, share in shares.items()}
+            for name, shares in self._populations.items()
+            if shares[None] != 1.0
+        }
+        return {"populations": excited} if excited else {}
 
     def __repr__(self) -> str:
         pressure = "" if self.pressure_Pa is None else f", {self.pressure_Pa:g} Pa"
@@ -114,6 +154,30 @@ class Mixture:
                     f"set {gas.name} has no elastic process that acts (it has: {ids}): it is not for swarms, only for "
                     "its processes alone. Use a complete set, or do not leave out the elastic process."
                 )
+
+    def _populations_of(self, gas: Gas) -> Populations:
+        given = {p.id: self.level_fractions.get(f"{gas.name}/{p.id}") for p in gas.processes}
+        return populations(
+            gas.processes,
+            self.temperature_K,
+            self.vibrational_temperature_K,
+            {level: fraction for level, fraction in given.items() if fraction is not None},
+        )
+
+    def _checked_level_fractions(self, given: Mapping[str, Any]) -> dict[str, float]:
+        fractions = {n: _number(x, f"level_fractions: fraction of {n}") for n, x in sorted(given.items())}
+        check_level_fractions(fractions, {gas.name: gas.processes for gas in self.gases})
+        return fractions
+
+    def _checked_vibrational_temperature(self, value: Any) -> float | None:
+        if value is None:
+            return None
+        if not any(process.is_level and process.vibrational for gas in self.gases for process in gas.processes):
+            raise MixtureError(
+                f"vibrational_temperature_K = {value!r}: no set of this mixture has a level marked as vibrational. "
+                "Leave it out, or add vibrational = true (and degeneracies) to the processes of a set."
+            )
+        return _checked_temperature(value, "vibrational_temperature_K")
 
     def _check_third_bodies(self) -> None:
         if self.pressure_Pa is not None:
@@ -156,10 +220,10 @@ def _checked_fractions(fractions: dict[str, Any], count: int) -> np.ndarray:
     return array
 
 
-def _checked_temperature(value: Any) -> float:
-    temperature = _number(value, "temperature_K")
+def _checked_temperature(value: Any, what: str = "temperature_K") -> float:
+    temperature = _number(value, what)
     if not 0.0 <= temperature <= 1e6:
-        raise MixtureError(f"temperature_K = {temperature:g} is not possible. Give 0 (cold gas) to 1e6.")
+        raise MixtureError(f"{what} = {temperature:g} is not possible. Give 0 (cold gas) to 1e6.")
     return temperature
 
 

@@ -1,4 +1,4 @@
-"""Powers with the same bits on every processor.
+"""Powers and exponentials with the same bits on every processor.
 
 numpy's and libm's pow, exp and log differ in the last bit between vector widths and versions. Here only operations
 act that IEEE 754 rounds exactly (+ - * / sqrt) or that are exact (splitting off and adding binary exponents).
@@ -8,6 +8,8 @@ import numpy as np
 
 _LOG2_E = 1.4426950408889634
 _LN_2 = 0.6931471805599453
+# ln 2 in two parts, the first with 32 bits, so that whole x _LN_2_HIGH is exact.
+_LN_2_HIGH, _LN_2_LOW = 0.693147180369123816490, 1.90821492927058770002e-10
 # 2 atanh(s) = 2 s (1 + z/3 + z^2/5 + ...), z = s^2 < 0.0295: what is left out is below 1e-18.
 _ATANH = tuple(1.0 / (2 * k + 1) for k in range(12))
 # exp(y) = 1 + y + y^2/2 + ..., |y| < 0.347: what is left out is below 1e-18.
@@ -68,3 +70,13 @@ def strict_power(base: np.ndarray, exponent: float) -> np.ndarray:
         limited = np.clip(whole, -1100.0, 1100.0).astype(np.int32)
         value = np.ldexp(_polynomial(np.clip(rest, -2.0, 2.0) * _LN_2, _EXP), limited)
         return np.where(base > 0.0, value, 0.0 if exponent > 0.0 else np.inf)
+
+
+def strict_exp(x: np.ndarray) -> np.ndarray:
+    """exp(x), with the same bits on every processor; x : ndarray of any shape. Relative error below 1e-15."""
+    x = np.asarray(x, dtype=np.float64)
+    with np.errstate(over="ignore", under="ignore"):
+        limited = np.clip(x, -760.0, 720.0)  # beyond these the result is 0 or infinite
+        whole = np.rint(limited * _LOG2_E)
+        rest = (limited - whole * _LN_2_HIGH) - whole * _LN_2_LOW
+        return np.ldexp(_polynomial(rest, _EXP), whole.astype(np.int32))

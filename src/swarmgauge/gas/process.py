@@ -43,8 +43,9 @@ class Process:
     id : name within its set. kind : "elastic", "excitation", "ionization" or "attachment". threshold_eV : energy loss;
     for attachment only the onset, which neither cuts nor costs energy. law : the cross section against energy.
     sharing : of an ionization. degeneracy_lower, degeneracy_upper : statistical weights; lower : id of the lower level,
-    None for the ground state. third_body : None for two bodies; else the cross section is in m5, per m-3 of the third
-    body: "self", "any", or formula to efficiency. passive : averaged over the swarm, without acting on it.
+    None for the ground state; vibrational : whether the upper level follows a vibrational temperature. third_body :
+    None for two bodies; else the cross section is in m5, per m-3 of the third body: "self", "any", or formula to
+    efficiency. passive : averaged over the swarm, without acting on it.
     relative_uncertainty : one standard deviation, None where not stated. scattering : angular law.
     Raises ProcessError where these contradict each other.
     """
@@ -60,6 +61,7 @@ class Process:
     degeneracy_lower: float | None = None
     degeneracy_upper: float | None = None
     lower: str | None = None
+    vibrational: bool = False
     third_body: Any = None
     passive: bool = False
     relative_uncertainty: float | None = None
@@ -93,6 +95,21 @@ class Process:
     def cut(self) -> bool:
         """Whether the cross section is zero below the threshold."""
         return self.kind in ("excitation", "ionization")
+
+    @property
+    def is_level(self) -> bool:
+        """Whether the process leads up to a level that can be populated, so that its reverse exists."""
+        return self.degeneracy_upper is not None and not self.passive
+
+    @property
+    def degeneracy_ratio(self) -> float:
+        """Statistical weight of the lower level over that of the upper one; 1 where not stated."""
+        return (self.degeneracy_lower or 1.0) / (self.degeneracy_upper or 1.0)
+
+    @property
+    def from_level(self) -> bool:
+        """Whether only molecules in the lower level are hit; other processes happen to all molecules alike."""
+        return self.degeneracy_upper is not None or self.lower is not None
 
     @property
     def breakpoints_eV(self) -> np.ndarray:
@@ -160,15 +177,18 @@ def _check_options(process: Process) -> None:
     if process.scattering != "isotropic":
         raise ProcessError(f'scattering = "{process.scattering}" is not available: only "isotropic". Remove the key.')
     _check_third_body(process.third_body)
-    for name in ("degeneracy_lower", "degeneracy_upper", "lower"):
-        if getattr(process, name) is not None and process.kind != "excitation":
+    for name in ("degeneracy_lower", "degeneracy_upper", "lower", "vibrational"):
+        if getattr(process, name) not in (None, False) and process.kind != "excitation":
             raise ProcessError(
                 f"{name} is given for an {process.kind} process. Remove it; only excitations have levels."
             )
-    for name in ("degeneracy_lower", "degeneracy_upper", "relative_uncertainty"):
+    for name, largest in (("degeneracy_lower", 1e6), ("degeneracy_upper", 1e6), ("relative_uncertainty", 1e300)):
         value = getattr(process, name)
-        if value is not None and not 0.0 < value < math.inf:
-            raise ProcessError(f"{name} = {value:g} is not possible. Give a finite number above 0.")
+        if value is not None and not 0.0 < value <= largest:
+            raise ProcessError(f"{name} = {value:g} is not possible. Give a number above 0, at most {largest:g}.")
+    if (process.degeneracy_lower is None) is not (process.degeneracy_upper is None):
+        given = "degeneracy_lower" if process.degeneracy_upper is None else "degeneracy_upper"
+        raise ProcessError(f"{given} is given alone. Give degeneracy_lower and degeneracy_upper, or neither.")
 
 
 def _check_third_body(body: Any) -> None:

@@ -74,6 +74,7 @@ class ProcessEntry(_Entry):
     degeneracy_lower: Number | None = Field(None, description="statistical weight of the lower level")
     degeneracy_upper: Number | None = Field(None, description="statistical weight of the upper level")
     lower: str | None = Field(None, description="id of the excitation to the lower level; default the ground state")
+    vibrational: bool = Field(False, description="the upper level follows a vibrational temperature, where given")
     third_body: ThirdBody | None = Field(
         None,
         description="three-body attachment; cross section then in m5",

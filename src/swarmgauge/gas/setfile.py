@@ -131,6 +131,7 @@ def _process(entry: ProcessEntry) -> Process:
         degeneracy_lower=entry.degeneracy_lower,
         degeneracy_upper=entry.degeneracy_upper,
         lower=entry.lower,
+        vibrational=entry.vibrational,
         third_body=entry.third_body,
         passive=entry.passive,
         relative_uncertainty=entry.relative_uncertainty,

@@ -62,6 +62,7 @@ def _entries(process: Process) -> dict[str, Any]:
         "degeneracy_lower": process.degeneracy_lower,
         "degeneracy_upper": process.degeneracy_upper,
         "lower": process.lower,
+        "vibrational": True if process.vibrational else None,
         "third_body": _inline_table(process.third_body) if isinstance(process.third_body, dict) else process.third_body,
         "passive": True if process.passive else None,
         "relative_uncertainty": process.relative_uncertainty,
