@@ -36,7 +36,8 @@ from swarmgauge.kernel.lookup import (
 )
 from swarmgauge.kernel.start import launch
 from swarmgauge.kernel.streams import cohort_start
-from swarmgauge.swarm.tables import build_tables, process_curves, process_threshold
+from swarmgauge.swarm.curves import process_curves, process_threshold
+from swarmgauge.swarm.tables import build_tables
 
 LANES = 64
 

@@ -15,7 +15,8 @@ from swarmgauge.kernel.flight import fly
 from swarmgauge.kernel.lanes import CUT, LEFT, NULL, OUTCOME, ROWS, SUM_ENERGY, SUM_TIME, SUM_Z, VX, VZ, WEIGHT, X, Z
 from swarmgauge.kernel.start import launch
 from swarmgauge.kernel.streams import cohort_start
-from swarmgauge.swarm.tables import TOWNSEND_IN_KERNEL_UNITS, build_tables, process_curves
+from swarmgauge.swarm.curves import process_curves
+from swarmgauge.swarm.tables import TOWNSEND_IN_KERNEL_UNITS, build_tables
 
 LEAST_P = 1e-4
 LANES = 2000

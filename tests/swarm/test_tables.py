@@ -1,85 +1,15 @@
-"""The kernel's tables against the cross sections of the set files."""
+"""The kernel's tables: majorants, units, averages over a warm gas."""
 
 import math
-from itertools import pairwise
 
 import numpy as np
 import pytest
 from kernel.model_gases import HELIUM_U, model, power_law
-from scipy import integrate
 
-from swarmgauge.gas import Mixture, load_named, shipped_sets
+from swarmgauge.gas import Mixture
 from swarmgauge.kernel.lookup import ENERGY_CELLS, SPEED_CELLS, energy_cell_edges, speed_edges
-from swarmgauge.swarm.tables import (
-    build_tables,
-    frequency_on_cells,
-    neutral_speeds,
-    process_curves,
-    process_threshold,
-)
-
-GASES = {name: load_named(name) for name in sorted(shipped_sets())}
-PROCESSES = [(name, process.id) for name, gas in GASES.items() for process in gas.processes]
-
-
-def maxwellian(w, thermal_eV):
-    """Density of speeds in sqrt(eV)."""
-    return 4 / math.sqrt(math.pi) * thermal_eV**-1.5 * w * w * np.exp(-w * w / thermal_eV)
-
-
-def rate_by_quadrature(process, threshold, thermal_eV):
-    """<w sigma> in 1e-20 m2 sqrt(eV) by scipy, cut at the breakpoints of the table."""
-    breaks = np.sqrt(np.unique(np.append(process.breakpoints_eV, threshold)))
-    top = math.sqrt(40 * thermal_eV + 2 * threshold)
-    pieces = np.unique(np.concatenate([np.linspace(math.sqrt(threshold), top, 60), breaks]))
-    pieces = pieces[(pieces >= math.sqrt(threshold)) & (pieces <= top)]
-    total = 0.0
-    for low, high in pairwise(pieces):
-        total += integrate.fixed_quad(
-            lambda w: w * process.cross_section(w * w) / 1e-20 * maxwellian(w, thermal_eV), low, high, n=20
-        )[0]
-    return total
-
-
-def rate_of_tables(low, high, thermal_eV):
-    """The same of a frequency linear in speed on the cells."""
-    edges = speed_edges()
-    x, weights = np.polynomial.legendre.leggauss(6)
-    speed = 0.5 * (edges[1:] + edges[:-1])[:, None] + 0.5 * np.diff(edges)[:, None] * x
-    part = (speed - edges[:-1, None]) / np.diff(edges)[:, None]
-    value = (low[:, None] + part * (high - low)[:, None]) * maxwellian(speed, thermal_eV)
-    return float((value @ weights * 0.5 * np.diff(edges)).sum())
-
-
-@pytest.mark.parametrize(("name", "process_id"), PROCESSES)
-def test_rates_over_maxwellians(name, process_id):
-    # scipy's Gauss quadrature of the set file's own cross section.
-    gas = GASES[name]
-    process = gas.process(process_id)
-    scale = 1.0 if process.third_body is None else 1e26
-    threshold = process_threshold(gas, process)
-    low, high = frequency_on_cells(process, threshold, scale)
-    compared = 0
-    for thermal_eV in (0.03, 0.3, 1.0, 3.0, 10.0, 50.0):
-        exact = scale * rate_by_quadrature(process, threshold, thermal_eV)
-        if exact > 1e-30 and threshold < 30 * thermal_eV:
-            assert rate_of_tables(low, high, thermal_eV) == pytest.approx(exact, rel=1e-4), thermal_eV
-            compared += 1
-    assert compared >= 2
-
-
-@pytest.mark.parametrize(("name", "process_id"), PROCESSES)
-def test_nothing_below_the_threshold(name, process_id):
-    gas = GASES[name]
-    process = gas.process(process_id)
-    low, high = frequency_on_cells(process, process_threshold(gas, process), 1.0)
-    assert (low >= 0).all()
-    assert (high >= 0).all()
-    assert (low + high > 0).any() or process.third_body is not None
-    starts = speed_edges()[:-1] ** 2
-    if process.kind in ("excitation", "ionization"):
-        assert not low[starts < process.threshold_eV * (1 + gas.mass_ratio)].any()
-        assert not high[starts < process.threshold_eV * (1 + gas.mass_ratio)].any()
+from swarmgauge.swarm.curves import process_curves
+from swarmgauge.swarm.tables import build_tables, neutral_speeds
 
 
 @pytest.mark.parametrize("scale", [1.0, 0.01, 100.0])

@@ -45,7 +45,7 @@ class Tables(NamedTuple):
     process : (SPEED_CELLS, P, 2), flat; frequency of each non-elastic process at both ends; processes sorted by gas.
     first_process : (G + 1,) int64; processes of gas g are first_process[g] .. first_process[g + 1] - 1.
     kind : (P,) int64; EXCITATION, IONIZATION or ATTACHMENT.
-    loss : (P,); energy loss as a drop of the squared relative speed: threshold x (m + M) / M.
+    loss : (P,); energy loss as a drop of the squared relative speed: threshold x (m + M) / M; superelastic: negative.
     sharing, sharing_fraction : (P,) int64 and float64; law of energy sharing in ionization.
     electron_part, neutral_part : (G,); m / (m + M) and M / (m + M).
     neutral_speed : (G,); standard deviation of one velocity component of the neutrals.

@@ -24,8 +24,8 @@ from swarmgauge.kernel.lookup import LAB_CELLS, SPEED_CELLS, speed_edges
 from swarmgauge.kernel.start import launch
 from swarmgauge.kernel.streams import cohort_start
 
+from .curves import ProcessCurve
 from .plan import Plan
-from .tables import ProcessCurve
 
 FLIGHTS_PER_CALL = 1e7  # a kernel call lasts some tenths of a second, so that Ctrl-C is heard
 MOST_STEPS = 10**8
@@ -170,6 +170,8 @@ def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
         visits = curve.low * lower[curve.gas] + curve.high * upper[curve.gas]
         row[at["rate"].start + column] = serial_sum(visits)
         above = edges[:-1] >= np.sqrt(min(curve.process.end_eV, 1e12))
+        if curve.superelastic:  # above the end of a table whenever its forward process is
+            continue
         row[at["above_end"].start + column] = serial_sum(np.where(above, histogram[curve.gas, :, 0], 0.0))
         if curve.process.kind == "attachment":
             row[at["attached_energy"].start + column] = serial_sum(visits * middle_energy)

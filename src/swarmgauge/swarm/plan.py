@@ -16,9 +16,10 @@ from swarmgauge.kernel.cohort import COMBED, COUPLED, SPLIT
 from swarmgauge.kernel.lanes import lane_count
 from swarmgauge.kernel.lookup import Tables
 
+from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve, process_curves
 from .field import Field
 from .rare import target_weights
-from .tables import TOWNSEND_IN_KERNEL_UNITS, UNIT_CROSS_SECTION_M2, ProcessCurve, build_tables, process_curves
+from .tables import TOWNSEND_IN_KERNEL_UNITS, build_tables
 from .two_term import TwoTerm, solve_two_term
 
 RATE_UNIT = UNIT_CROSS_SECTION_M2 * SPEED_1_EV  # m^3/s of one kernel frequency unit
@@ -35,7 +36,7 @@ LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by atta
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = ("plan.py", "rare.py", "tables.py", "cohort.py", "pilot.py")
+_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "cohort.py", "pilot.py")
 
 
 @dataclass(frozen=True, eq=False)

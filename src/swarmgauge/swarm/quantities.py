@@ -22,6 +22,7 @@ UNITS = {
     "mean_energy": "eV",
     "rate:": _RATE,
     "rate3:": "m^6/s",
+    "superelastic_rate:": _RATE,
     "collision_frequency_over_N": _RATE,
     "ionization_frequency_over_N": _RATE,
     "attachment_frequency_over_N": _RATE,
@@ -30,6 +31,7 @@ UNITS = {
     "field_heating_over_N": "W m^3",
     "energy_balance_residual": "1",
     "loss_fraction:": "1",
+    "gain_fraction:": "1",
 }
 KNOWN_PATTERNS = [name + "*" if name.endswith(":") else name for name in UNITS]
 _ORDER = {name: place for place, name in enumerate(UNITS)}

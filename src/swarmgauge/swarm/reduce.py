@@ -28,9 +28,9 @@ from swarmgauge.kernel.history import (
 from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
 from .cohort import SumsLayout, layout_of, serial_sum
+from .curves import UNIT_CROSS_SECTION_M2
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order
-from .tables import UNIT_CROSS_SECTION_M2
 
 DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
 UNSEEN_EVENTS = 2.9957322735539909  # -ln 0.05: 95 % upper bound on the expected number of events where none was seen
@@ -122,7 +122,7 @@ class Reducer:
         return any(curve.process.kind in ("ionization", "attachment") for curve in self.plan.curves)
 
     def rates(self, rows: np.ndarray) -> dict[str, np.ndarray]:
-        """Rate of every process per density of its target, and the frequencies of the mixture."""
+        """Rate of every process per density of its gas, in whatever level, and the frequencies of the mixture."""
         mixture = self.plan.mixture
         per_target = self.part(rows, "rate")
         result: dict[str, np.ndarray] = {}
@@ -131,11 +131,11 @@ class Reducer:
             gas = mixture.gases[curve.gas]
             rate = per_target[:, column] * RATE_UNIT
             name = f"{gas.name}/{curve.process.id}"
-            if curve.process.third_body is None:
-                result[f"rate:{name}"] = rate
-            else:
+            if curve.process.third_body is not None:
                 density = mixture.body_density_m3(gas, curve.process)
-                result[f"rate3:{name}"] = rate / density if density > 0.0 else np.zeros(len(rows))
+                result[curve.rate_name + name] = rate / density if density > 0.0 else np.zeros(len(rows))
+            else:
+                result[curve.rate_name + name] = rate
             if column < len(self.plan.curves):
                 share = mixture.fractions[curve.gas] * rate
                 for key in ("collision", curve.process.kind):
@@ -156,7 +156,10 @@ class Reducer:
         return result
 
     def power(self, rows: np.ndarray, known: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
-        """Field heating and where it goes: elastic recoil, thresholds, attached electrons, new electrons."""
+        """Field heating and where it goes: elastic recoil, thresholds, attached electrons, new electrons.
+
+        What superelastic collisions give is set off against it.
+        """
         field = self.plan.field.E_over_N_Td * TOWNSEND
         if field == 0.0:
             return {}
@@ -176,8 +179,9 @@ class Reducer:
             else:
                 loss = share * curve.process.threshold_eV * rates[:, column]
             fraction = loss * RATE_UNIT / heating
-            result[f"loss_fraction:{gas.name}/{curve.process.id}"] = fraction
-            spent = spent + fraction
+            kind = "gain" if curve.superelastic else "loss"
+            result[f"{kind}_fraction:{gas.name}/{curve.process.id}"] = fraction
+            spent = spent - fraction if curve.superelastic else spent + fraction
         if self._population_changes():
             fraction = known["net_frequency_over_N"] * known["mean_energy"] / heating
             result["loss_fraction:population_change"] = fraction
@@ -197,9 +201,8 @@ class Reducer:
             share = float(mixture.fractions[curve.gas])
             name = f"{gas.name}/{curve.process.id}"
             body = mixture.body_density_m3(gas, curve.process)
-            kind = "rate:" if curve.process.third_body is None else "rate3:"
-            if share > 0.0 and body > 0.0:
-                bounds[kind + name] = per_time / (share if kind == "rate:" else share * body)
+            if share > 0.0 and body > 0.0 and curve.high.any():  # else it cannot happen: the rate is exactly 0
+                bounds[curve.rate_name + name] = per_time / (share * body)
         for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
             bounds[name] = per_time
         return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}

@@ -1,16 +1,8 @@
-"""From a mixture to the kernel's tables: cross sections to collision frequencies on speed cells, and the majorant.
-
-In each speed cell a frequency is linear in speed, chosen so that its integral and its first moment over the cell are
-those of the exact curve: rate integrals then differ from the file's by less than 1e-4, however narrow a structure is.
-A process starts at the first cell edge above its threshold; what lies between is carried into that cell, so that no
-event happens below the threshold and none is lost.
-"""
-
-from dataclasses import dataclass
+"""From the curves of a mixture to the kernel's tables, and the majorant of all collisions."""
 
 import numpy as np
 
-from swarmgauge.gas import Gas, Mixture, Process
+from swarmgauge.gas import Mixture
 from swarmgauge.gas.constants import BOLTZMANN, E_CHARGE
 from swarmgauge.kernel.lookup import (
     ATTACHMENT,
@@ -26,21 +18,14 @@ from swarmgauge.kernel.lookup import (
     speed_edges,
 )
 
-UNIT_CROSS_SECTION_M2 = 1e-20  # the kernel's unit
+from .curves import ProcessCurve, process_threshold
+
 TOWNSEND_IN_KERNEL_UNITS = 0.05  # acceleration (E/N) / 2e-20 V m^2
 NEUTRAL_REACH = 9.5  # standard deviations: the kernel's normal numbers end at 6.67 in a pair, 9.43 in three dimensions
 LARGEST_TIME = 1e300
-
 _KIND = {"excitation": EXCITATION, "ionization": IONIZATION, "attachment": ATTACHMENT}
 _SHARING = {"uniform": SHARE_UNIFORM, "equal": SHARE_EQUAL, "fixed": SHARE_FIXED}
 # Gauss points as digits, because numpy finds them by LAPACK, whose last bits depend on the processor.
-# Legendre, 4 points: exact for w x (piecewise linear in w^2).
-_GAUSS = (
-    (-0.8611363115940526, 0.34785484513745357),
-    (-0.33998104358485626, 0.6521451548625464),
-    (0.33998104358485626, 0.6521451548625464),
-    (0.8611363115940526, 0.34785484513745357),
-)
 # A standard normal number, 8 points (Hermite), and the sum of two squared ones, 4 points (Laguerre).
 _NORMAL = (
     (-4.1445471861258945, 0.0001126145383753679),
@@ -58,71 +43,6 @@ _TWO_SQUARES = (
     (9.073240593842256, 0.038887908515005405),
     (18.790141824602266, 0.0005392947055613296),
 )
-
-
-@dataclass(frozen=True, eq=False)
-class ProcessCurve:
-    """Frequency of one process per density of its target on the speed cells, kernel units.
-
-    low, high : (SPEED_CELLS,); at the lower and upper end of each cell.
-    """
-
-    gas: int
-    process: Process
-    low: np.ndarray
-    high: np.ndarray
-
-
-def process_threshold(gas: Gas, process: Process) -> float:
-    """Least squared relative speed, eV, at which a process can happen: threshold x (m + M) / M, or 0."""
-    if process.kind in ("excitation", "ionization"):
-        return process.threshold_eV * (1.0 + gas.mass_ratio)
-    return 0.0
-
-
-def frequency_on_cells(process: Process, threshold: float, scale: float) -> tuple[np.ndarray, np.ndarray]:
-    """Values at the lower and upper end of every speed cell; integral and first moment over the cell are kept.
-
-    threshold : squared speed below which the process is off, eV; scale : factor on the cross section (density of a
-    third body). Both returned arrays have shape (SPEED_CELLS,), are not negative and are in kernel units.
-    """
-    edges = speed_edges()
-    start = np.sqrt(threshold)
-    breaks = np.sqrt(process.breakpoints_eV)
-    points = np.unique(np.concatenate([edges, breaks[(breaks > 0) & (breaks < edges[-1])], [start]]))
-    points = points[points >= start]
-    lower, upper = points[:-1], points[1:]
-    middle, half = 0.5 * (lower + upper), 0.5 * (upper - lower)
-    cell = np.searchsorted(edges, middle) - 1
-    first = int(np.searchsorted(edges, start))  # the first cell that starts at or above the threshold
-    cell = np.maximum(cell, first)
-    width = edges[cell + 1] - edges[cell]
-    mean = np.zeros(len(middle))
-    moment = np.zeros(len(middle))
-    for x, weight in _GAUSS:
-        speed = middle + half * x
-        value = speed * process.cross_section(speed * speed) * (scale / UNIT_CROSS_SECTION_M2)
-        mean += weight * half * value / width
-        moment += weight * half * value / width * ((speed - edges[cell]) / width)
-    integral = np.bincount(cell, weights=mean, minlength=SPEED_CELLS)
-    first_moment = np.bincount(cell, weights=moment, minlength=SPEED_CELLS)
-    high = 6.0 * first_moment - 2.0 * integral
-    low = 2.0 * integral - high
-    high = np.where(low < 0.0, 2.0 * integral, np.where(high < 0.0, 0.0, high))
-    low = np.maximum(2.0 * integral - high, 0.0)
-    return low, high
-
-
-def process_curves(mixture: Mixture, *, passive: bool) -> list[ProcessCurve]:
-    """Curves of all passive or all acting processes of a mixture, in the order of its gases and sets."""
-    curves = []
-    for index, gas in enumerate(mixture.gases):
-        for process in mixture.acting(gas):
-            if process.passive is passive:
-                scale = mixture.body_density_m3(gas, process)
-                low, high = frequency_on_cells(process, process_threshold(gas, process), scale)
-                curves.append(ProcessCurve(index, process, low, high))
-    return curves
 
 
 def build_tables(
@@ -165,7 +85,7 @@ def build_tables(
         process=process.ravel(),
         first_process=np.searchsorted([c.gas for c in others], np.arange(gases + 1)).astype(np.int64),
         kind=np.array([_KIND[c.process.kind] for c in others], dtype=np.int64),
-        loss=np.array([process_threshold(mixture.gases[c.gas], c.process) for c in others], dtype=np.float64),
+        loss=np.array([_loss(mixture, c) for c in others], dtype=np.float64),
         sharing=np.array([_SHARING[c.process.sharing.kind] for c in others], dtype=np.int64),
         sharing_fraction=np.array([c.process.sharing.fraction for c in others], dtype=np.float64),
         electron_part=ratio / (1.0 + ratio),
@@ -174,6 +94,11 @@ def build_tables(
         target_weight=np.ones(ENERGY_CELLS) if target_weight is None else np.array(target_weight),
         net_frequency=net_frequency(others, fractions, sigma).ravel(),
     )
+
+
+def _loss(mixture: Mixture, curve: ProcessCurve) -> float:
+    threshold = process_threshold(mixture.gases[curve.gas], curve.process)
+    return -threshold if curve.superelastic else threshold
 
 
 def neutral_speeds(mixture: Mixture) -> np.ndarray:
@@ -231,7 +156,7 @@ def majorants(
         cumulated = np.cumsum(bound * (1.0 + 1e-12), axis=0)
         total = np.maximum(cumulated[-1], 1e-12)
         flight = window / acceleration if acceleration > 0 else LARGEST_TIME
-        x = np.minimum(total * flight, 1e6)
+        x = np.minimum(total, 1e6 / flight) * flight
         cost = total * (1.0 + 1.0 / (x + x * x / 2.0 + x * x * x / 6.0))
         better = cost < best_cost
         best_cost[better] = cost[better]

@@ -82,7 +82,11 @@ def solve_two_term(mixture: Mixture, E_over_N_Td: float, *, cells: int = CELLS) 
     rough = _rough_solution(curves, field, thermal_eV)
     grid = _fitted_grid(rough, cells)
     joint = max(1, int(np.searchsorted(grid.centre, (rough.grid.weight * rough.grid.centre) @ rough.f)))
-    balance, f = steady(EnergyOperator(curves, grid, field, thermal_eV, joint), guess=rough.balance.growth)
+    estimate = rough
+    for _ in range(2 if any(channel.superelastic for channel in curves.channels) else 1):
+        operator = EnergyOperator(curves, grid, field, thermal_eV, joint, estimate.log_f)
+        balance, f = steady(operator, guess=estimate.balance.growth)
+        estimate = _Estimate(grid, balance, np.maximum(f, np.finfo(float).tiny))
     if not np.isfinite(f).all():
         raise _no_distribution(field)
     positive = bool((f > 0.0).all())
@@ -116,27 +120,33 @@ def _weak_field(curves: CollisionCurves, thermal_eV: float) -> float:
 
 
 @dataclass(frozen=True, eq=False)
-class _Rough:
+class _Estimate:
     grid: Grid
     balance: Balance
     f: np.ndarray
 
+    def log_f(self, energy_eV: np.ndarray) -> np.ndarray:
+        """ln f at energies, going on evenly above the grid."""
+        slope = math.log(self.f[-1] / self.f[-2]) / self.grid.step[-1]
+        inside = np.interp(energy_eV, self.grid.centre, np.log(self.f))
+        return inside + slope * np.maximum(energy_eV - self.grid.centre[-1], 0.0)
 
-def _rough_solution(curves: CollisionCurves, field: float, thermal_eV: float) -> _Rough:
+
+def _rough_solution(curves: CollisionCurves, field: float, thermal_eV: float) -> _Estimate:
     """A solution on few cells, on a range of energy over which f0 falls by the wanted amount or somewhat more."""
     low, high = 0.0, math.inf
     top = min(max(4.0 * (field / TOWNSEND) ** 0.75, 40.0 * thermal_eV), TOP_EV)  # a fair guess for most gases
-    best: _Rough | None = None
+    best: _Estimate | None = None
     for _ in range(_MOST_TOPS):
         grid = Grid(top * np.linspace(0.0, 1.0, _ROUGH_CELLS + 1) ** 2)
         with np.errstate(all="ignore"):
-            balance, f = steady(
-                EnergyOperator(curves, grid, field, thermal_eV, _ROUGH_CELLS // 4),
-                guess=best.balance.growth if best else 0.0,
+            operator = EnergyOperator(
+                curves, grid, field, thermal_eV, _ROUGH_CELLS // 4, best.log_f if best else np.zeros_like
             )
+            balance, f = steady(operator, guess=best.balance.growth if best else 0.0)
             fall = np.log(f[-1] / f.max()) if (f > 0.0).all() and np.isfinite(f).all() else -math.inf
         if fall > _LARGEST_FALL:
-            best = _Rough(grid, balance, f)
+            best = _Estimate(grid, balance, f)
         if fall < _LARGEST_FALL:
             high = top
             top = max(0.25 * top, math.sqrt(low * high))
@@ -151,7 +161,7 @@ def _rough_solution(curves: CollisionCurves, field: float, thermal_eV: float) ->
     return best
 
 
-def _fitted_grid(rough: _Rough, cells: int) -> Grid:
+def _fitted_grid(rough: _Estimate, cells: int) -> Grid:
     """Cells up to the wanted fall of f0, part of them equal in speed, part equal in the fall of ln f0."""
     logarithm = np.log(rough.f / rough.f.max())
     speed = np.sqrt(rough.grid.centre)
@@ -189,7 +199,7 @@ def _values(balance: Balance, f: np.ndarray, coefficients: Transport, E_over_N_T
     per_target = SPEED_1_EV * (operator.events @ f)
     frequency = dict.fromkeys(("elastic", "excitation", "ionization", "attachment"), 0.0)
     for channel, rate in zip(operator.curves.channels, per_target.tolist(), strict=True):
-        values[f"rate{'' if channel.process.third_body is None else '3'}:{channel.name}"] = rate
+        values[channel.rate_name] = channel.population * rate
         frequency[channel.process.kind] += channel.weight * rate
     values["ionization_frequency_over_N"] = frequency["ionization"]
     values["attachment_frequency_over_N"] = frequency["attachment"]
@@ -197,34 +207,36 @@ def _values(balance: Balance, f: np.ndarray, coefficients: Transport, E_over_N_T
     values["collision_frequency_over_N"] = sum(frequency.values())
     mean_speed = SPEED_1_EV * float(0.5 * np.diff(grid.edges**2) @ f)
     values["mean_free_path_times_N"] = mean_speed / values["collision_frequency_over_N"]
-    values.update(_power_balance(balance, f, per_target, values["drift_velocity_flux"]))
+    values.update(_power_balance(balance, f, values["drift_velocity_flux"]))
     return {name: values[name] for name in in_order(values)}
 
 
-def _power_balance(balance: Balance, f: np.ndarray, per_target: np.ndarray, drift: float) -> dict[str, float]:
+def _power_balance(balance: Balance, f: np.ndarray, drift: float) -> dict[str, float]:
     """Heating by the field, the share of it that every process takes, and what is left over; NaN without a field."""
     operator, grid = balance.operator, balance.operator.grid
     heating_eV = drift * operator.field
     if heating_eV == 0.0:
         heating_eV = math.nan
     elastic = -SPEED_1_EV * balance.elastic_flux(f) * grid.step
-    losses = {}
+    losses, gains = {}, {}
     for row, channel in enumerate(operator.curves.channels):
-        process, rate = channel.process, channel.weight * float(per_target[row])
-        if process.passive:
+        if channel.process.passive:
             continue
-        if process.kind == "elastic":
+        if channel.process.kind == "elastic":
             loss = float(elastic @ operator.friction_share(row))
-        elif process.kind == "attachment":
-            loss = channel.weight * SPEED_1_EV * float((operator.events[row] * grid.centre) @ f)
         else:
-            loss = rate * process.threshold_eV
-        losses[f"loss_fraction:{channel.name}"] = loss / heating_eV
+            loss = channel.weight * SPEED_1_EV * float(operator.spent[row] @ f)
+        if channel.superelastic:
+            gains[f"gain_fraction:{channel.name}"] = -loss / heating_eV
+        else:
+            losses[f"loss_fraction:{channel.name}"] = loss / heating_eV
     growth_loss = SPEED_1_EV * balance.growth * float((grid.weight * grid.centre) @ f)
     losses["loss_fraction:population_change"] = growth_loss / heating_eV
     return {
         "field_heating_over_N": E_CHARGE * heating_eV if drift else 0.0,
         # Bits of linear algebra, below 1e-12, differ between processors; + 0.0 turns -0.0 into 0.0.
-        "energy_balance_residual": round(1.0 - math.fsum(losses.values()), 8) + 0.0,
+        "energy_balance_residual": round(1.0 - math.fsum([*losses.values(), *(-gain for gain in gains.values())]), 8)
+        + 0.0,
         **losses,
+        **gains,
     }

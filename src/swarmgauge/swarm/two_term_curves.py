@@ -10,6 +10,7 @@ from functools import cached_property
 import numpy as np
 
 from swarmgauge.gas import Gas, Mixture, Process
+from swarmgauge.gas.levels import superelastic_cross_section
 
 TOP_EV = 1e4
 _LOWEST_EV = 1e-8
@@ -19,10 +20,11 @@ _SIDE = 1e-9  # relative distance of the two mesh points that hold a jump
 
 @dataclass(frozen=True, eq=False)
 class Channel:
-    """One process of a mixture.
+    """One process of a mixture, or the reverse of one.
 
     name : "<set>/<process>"; share : fraction of its set in the mixture; bodies : density of the third body, 1/m3, or
-    1 for a two-body process; share x bodies x cross section is the process's part of the mixture.
+    1 for a two-body process; population : share of the molecules of its set that it can happen to; share x bodies x
+    population x cross section is the process's part of the mixture. superelastic : whether it is the reverse.
     """
 
     name: str
@@ -30,11 +32,31 @@ class Channel:
     process: Process
     share: float
     bodies: float
+    population: float = 1.0
+    superelastic: bool = False
+
+    @property
+    def loss_eV(self) -> float:
+        """Energy that the electron loses, negative where it gains; of attachment, only the onset."""
+        return -self.process.threshold_eV if self.superelastic else self.process.threshold_eV
+
+    @property
+    def rate_name(self) -> str:
+        """Name of its rate."""
+        if self.superelastic:
+            return f"superelastic_rate:{self.name}"
+        return f"rate{'' if self.process.third_body is None else '3'}:{self.name}"
+
+    def section(self, energy_eV: np.ndarray) -> np.ndarray:
+        """Cross section at energies > 0, m2 (m5 for three bodies)."""
+        if self.superelastic:
+            return superelastic_cross_section(self.process, energy_eV, self.process.threshold_eV)
+        return self.process.cross_section(energy_eV)
 
     @property
     def weight(self) -> float:
         """Factor on the cross section for the mixture; 0 when passive."""
-        return 0.0 if self.process.passive else self.share * self.bodies
+        return 0.0 if self.process.passive else self.share * self.bodies * self.population
 
     @property
     def recoil(self) -> float:
@@ -62,6 +84,10 @@ class CollisionCurves:
         """Integral of energy x cross section over each cell, (channels, cells), eV^2 m^2 (eV^2 m^5)."""
         return np.diff(self._rates(edges), axis=1)
 
+    def integrals_of(self, row: int, points: np.ndarray) -> np.ndarray:
+        """Integrals of energy x one cross section between successive points, (len(points) - 1,), eV^2 m^2."""
+        return np.diff(_Antiderivative(self.mesh, self.sections[row : row + 1], 1)(points)[0])
+
     def mean_momentum_and_recoil(self, points: np.ndarray) -> np.ndarray:
         """Means of momentum and recoil cross section between successive points, (2, len(points) - 1), m2."""
         return np.diff(self._momentum_and_recoil(points), axis=1) / np.diff(points)
@@ -80,24 +106,14 @@ class CollisionCurves:
 
 
 def collision_curves(mixture: Mixture) -> CollisionCurves:
-    """Curves of all processes of a mixture that are not left out, in the order of its gases and sets."""
-    channels = [
-        Channel(
-            name=f"{gas.name}/{process.id}",
-            gas=gas,
-            process=process,
-            share=float(share),
-            bodies=1.0 if process.third_body is None else float(mixture.body_density_m3(gas, process)),
-        )
-        for gas, share in zip(mixture.gases, mixture.fractions, strict=True)
-        for process in mixture.acting(gas)
-    ]
+    """Curves of all processes of a mixture that are not left out and of their reverses, in the order of its sets."""
+    channels = _channels(mixture)
     mesh = _mesh(channels)
     sections = np.empty((len(channels), len(mesh)))
     momentum = np.zeros(len(mesh))
     recoil = np.zeros(len(mesh))
     for row, channel in enumerate(channels):
-        sections[row, 1:] = channel.process.cross_section(mesh[1:])
+        sections[row, 1:] = channel.section(mesh[1:])
         sections[row, 0] = sections[row, 1]
         kept = 1.0 if channel.process.kind == "attachment" else 1.0 / (1.0 + channel.gas.mass_ratio)
         momentum += channel.weight * kept * sections[row]
@@ -106,12 +122,26 @@ def collision_curves(mixture: Mixture) -> CollisionCurves:
     return CollisionCurves(tuple(channels), mesh, sections, momentum, recoil)
 
 
+def _channels(mixture: Mixture) -> list[Channel]:
+    channels = []
+    for gas, share in zip(mixture.gases, mixture.fractions, strict=True):
+        for process in mixture.acting(gas):
+            name = f"{gas.name}/{process.id}"
+            bodies = float(mixture.body_density_m3(gas, process))
+            channels.append(Channel(name, gas, process, float(share), bodies, mixture.share_hit(gas, process)))
+            excited = mixture.share_excited(gas, process)
+            if excited > 0.0:
+                channels.append(Channel(name, gas, process, float(share), bodies, excited, superelastic=True))
+    return channels
+
+
 def _mesh(channels: list[Channel]) -> np.ndarray:
     points = [np.geomspace(_LOWEST_EV, TOP_EV, _MESH_POINTS)]
     for channel in channels:
         inner = np.asarray(channel.process.breakpoints_eV, dtype=float)
         jumps = np.array([channel.process.threshold_eV, *inner[:1], *inner[-1:]])
-        points += [inner, jumps, jumps * (1.0 - _SIDE), jumps * (1.0 + _SIDE)]
+        gain = channel.process.threshold_eV if channel.superelastic else 0.0
+        points += [place - gain for place in (inner, jumps, jumps * (1.0 - _SIDE), jumps * (1.0 + _SIDE))]
     mesh = np.unique(np.concatenate(points))
     return np.concatenate([[0.0], mesh[(mesh >= _LOWEST_EV) & (mesh <= TOP_EV)]])
 

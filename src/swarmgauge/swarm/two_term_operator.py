@@ -12,19 +12,20 @@ Electron Devices 16, 64 (1969), who used it for charge carriers), so that a Maxw
 Cell centres are centroids of sqrt(e): number and energy of a cell are weight x f and weight x centre x f, and every
 transfer by a collision is shared between two neighbouring cells so that both are conserved.
 
-Summed over all cells above an edge the balance says: flux through the edge = what falls through it + growth above it.
-No process lifts an electron, so above a chosen cell, the `joint` near the mean energy, these sums form an upper
-triangular system, solved from the top down without subtracting large numbers. Below the joint, where f may fall towards
-zero energy if attachment is strong, the plain balances of the cells are solved by LU decomposition. The balance of the
-joint itself stays open, to be closed by the growth rate. (A superelastic process would be one more transfer, with a
-negative loss; the sums then have entries below the diagonal, and all cells want the LU decomposition, with f in units
-of an estimate so that the tail keeps its digits.)
+The balance of one cell, the `joint` near the mean energy, stays open, to be closed by the growth rate; those of the
+other cells are solved by LU decomposition. In them everything but the diagonal has one sign, so that elimination from
+the lowest cell up hardly ever subtracts large numbers, and f keeps its digits over all the decades that it falls.
+
+Transfers by an excitation that has a reverse are found for pieces of energy that lie in one cell before and in one
+after, so that every low cell, however narrow, is fed as it is drained, and the reverse goes the same ways back. Within
+a cell f is taken to fall there as an estimate of it does, so that a Maxwellian stays in balance.
 """
 
+from collections.abc import Callable
 from functools import cached_property
 
 import numpy as np
-from scipy.linalg import lu_factor, lu_solve, solve_triangular
+from scipy.linalg import lu_factor, lu_solve
 
 from .two_term_curves import CollisionCurves
 
@@ -53,20 +54,35 @@ class Grid:
 class EnergyOperator:
     """Collisions and field on a grid, all but the growth rate.
 
-    field : E/N in V m^2, > 0; thermal_eV : kT of the gas, eV, >= 0; joint : cell whose balance stays open.
+    field : E/N in V m^2, > 0; thermal_eV : kT of the gas, eV, >= 0; joint : cell whose balance stays open;
+    log_f : gives ln of an estimate of f at energies in eV.
     events : (channels, n), integral of energy x cross section in each cell, per density of the target: events . f is
     the rate over sqrt(2e/m). Of a process with a threshold, what lies in a cell below the first edge above the
-    threshold is carried into the next cell, since no electron at the cell's centre could pay for it.
+    threshold is carried into the next cell, since no electron at the cell's centre could pay for it. A superelastic
+    collision that would lift an electron above the grid is left out.
+    spent : (channels, n), energy that electrons of each cell lose by them, likewise; negative where they gain.
+    exchanges : row of an excitation with a reverse to what goes from cell j to cell i by it, and by its reverse.
     net : (n,), ionization minus attachment of the mixture, likewise.
     """
 
-    def __init__(self, curves: CollisionCurves, grid: Grid, field: float, thermal_eV: float, joint: int):
+    def __init__(
+        self,
+        curves: CollisionCurves,
+        grid: Grid,
+        field: float,
+        thermal_eV: float,
+        joint: int,
+        log_f: Callable[[np.ndarray], np.ndarray] = np.zeros_like,
+    ):
         self.curves, self.grid, self.field, self.thermal_eV, self.joint = curves, grid, field, thermal_eV, joint
         self.events = _payable(curves, grid)
+        self.spent = self.events * np.array([channel.loss_eV for channel in curves.channels])[:, None]
+        self.exchanges = self._settle_reversible(log_f)
         self.weights = np.array([channel.weight for channel in curves.channels])
         kinds = np.array([channel.process.kind for channel in curves.channels])
         self.gain = np.where(kinds == "ionization", self.weights, 0.0) @ self.events
         self.loss = np.where(kinds == "attachment", self.weights, 0.0) @ self.events
+        self.spent[kinds == "attachment"] = self.events[kinds == "attachment"] * grid.centre
         self.net = self.gain - self.loss
         momentum, recoil = curves.mean_momentum_and_recoil(grid.centre)
         self.momentum = np.maximum(momentum, _LEAST_SECTION_M2)
@@ -78,21 +94,26 @@ class EnergyOperator:
         own = channel.weight * channel.recoil * self.curves.mean_section(row, self.grid.centre) * self.grid.middle**2
         return np.divide(own, self.friction, out=np.zeros_like(own), where=self.friction > 0.0)
 
+    def _settle_reversible(self, log_f: Callable[[np.ndarray], np.ndarray]) -> dict[int, np.ndarray]:
+        """Exchanges of the excitations with a reverse; sets their events and what is spent in them to match."""
+        exchanges = {}
+        drop = self.grid.centre[None, :] - self.grid.centre[:, None]
+        for reverse, channel in enumerate(self.curves.channels):
+            if channel.superelastic:
+                pair = _exchange(self.curves, reverse - 1, self.grid, log_f)
+                for row, exchange in zip((reverse - 1, reverse), pair, strict=True):
+                    exchanges[row] = exchange
+                    self.events[row] = exchange.sum(axis=0)
+                    self.spent[row] = (exchange * drop).sum(axis=0)
+        return exchanges
+
     @cached_property
     def transfers(self) -> np.ndarray:
         """(n, n): change of the number in cell i by inelastic collisions, per f of cell j."""
-        return _transfers(self.curves, self.grid, self.events)
-
-    @cached_property
-    def falling(self) -> np.ndarray:
-        """(n - 1 - joint, n - joint): number falling through the edges above the joint, per f of cells from it on."""
-        above = np.cumsum(self.transfers[: self.joint : -1, self.joint :], axis=0)[::-1]
-        return np.asfortranarray(-above)
-
-    @cached_property
-    def number_above(self) -> np.ndarray:
-        """Number above the same edges, per f of the same cells."""
-        return np.asfortranarray(np.triu(np.broadcast_to(self.grid.weight[self.joint :], self.falling.shape), 1))
+        result = _transfers(self.curves, self.grid, self.events)
+        for row, exchange in self.exchanges.items():
+            result += self.weights[row] * exchange
+        return result
 
     def at_growth(self, growth: float) -> "Balance":
         """The balance of a swarm with a given growth rate (over N sqrt(2e/m))."""
@@ -118,28 +139,21 @@ class Balance:
         drift = operator.friction * grid.step / diffusion
         self.down = diffusion / grid.step * _bernoulli(-drift)  # per f of the upper cell
         self.up = np.maximum(diffusion / grid.step * _bernoulli(drift), np.finfo(float).tiny)  # per f of the lower cell
-        self._upper = self._edge_balances()
-        self._lower_by_joint_on, self._lower = self._cell_balances()
+        self._from_joint, self._factors = self._closed_balances()
 
-    def _edge_balances(self) -> np.ndarray:
-        """Balances of what is above the edges above the joint, upper triangular but for the last column."""
-        operator, joint = self.operator, self.operator.joint
-        system = operator.falling + self.growth * operator.number_above
-        edges = np.arange(len(system))
-        system[edges, edges] -= self.up[joint:]
-        system[edges, edges + 1] += self.down[joint:]
-        return system
-
-    def _cell_balances(self) -> tuple[np.ndarray, tuple]:
-        """Balances of the cells below the joint: coefficients of the cells from it on, and factors for those below."""
-        operator, joint = self.operator, self.operator.joint
-        system = -operator.transfers[:joint]
-        cells = np.arange(joint)
-        system[cells, cells] += self.growth * operator.grid.weight[:joint] + self.up[:joint]
-        system[cells[1:], cells[1:]] += self.down[: joint - 1]
-        system[cells[1:], cells[:-1]] -= self.up[: joint - 1]
-        system[cells, cells + 1] -= self.down[:joint]
-        return system[:, joint:], lu_factor(system[:, :joint], check_finite=False)
+    def _closed_balances(self) -> tuple[np.ndarray, tuple]:
+        """Balances of all cells but the joint: coefficients of the joint, and factors for the others."""
+        operator = self.operator
+        system = -operator.transfers
+        cells = np.arange(len(system))
+        system[cells, cells] += self.growth * operator.grid.weight
+        system[cells[:-1], cells[:-1]] += self.up
+        system[cells[1:], cells[1:]] += self.down
+        system[cells[1:], cells[:-1]] -= self.up
+        system[cells[:-1], cells[1:]] -= self.down
+        closed = np.delete(system, operator.joint, axis=0)
+        others = np.delete(closed, operator.joint, axis=1)
+        return closed[:, operator.joint], lu_factor(others, overwrite_a=True, check_finite=False)
 
     def field_flux(self, f: np.ndarray) -> np.ndarray:
         """The field's part of the energy flux between centres, (n - 1,)."""
@@ -151,26 +165,20 @@ class Balance:
 
     def homogeneous(self) -> np.ndarray:
         """The f with number 1 that solves all balances but the open one, (n,); not finite if it exceeds all numbers."""
-        f = self._solve(-self._upper[:, -1:], np.zeros((self.operator.joint, 1)), 1.0)[:, 0]
+        f = self._solve(-self._from_joint, 1.0)
         f /= f.max()
         return f / (self.operator.grid.weight @ f)
 
     def forced(self, sources: np.ndarray, fluxes: np.ndarray) -> np.ndarray:
-        """The f that are zero in the highest cell and solve all balances but the open one, (n, k).
+        """The f that are zero in the joint and solve all balances but the open one, (n, k).
 
         sources : (n, k), in each cell; fluxes : (n - 1, k), given parts of J between centres.
         """
-        joint = self.operator.joint
-        above = np.cumsum(sources[:joint:-1], axis=0)[::-1] + fluxes[joint:]
-        return self._solve(above, sources[:joint] - np.diff(fluxes[:joint], axis=0, prepend=0.0), 0.0)
+        balances = sources - np.diff(fluxes, axis=0, prepend=0.0, append=0.0)
+        return self._solve(np.delete(balances, self.operator.joint, axis=0), 0.0)
 
-    def _solve(self, above: np.ndarray, cells: np.ndarray, highest: float) -> np.ndarray:
-        last = np.full((1, above.shape[1]), highest)
-        high = np.concatenate([solve_triangular(self._upper[:, :-1], above, check_finite=False), last])
-        if not np.isfinite(high).all():
-            return np.full((len(cells) + len(high), high.shape[1]), np.nan)
-        low = lu_solve(self._lower, cells - self._lower_by_joint_on @ high, check_finite=False)
-        return np.concatenate([low, high])
+    def _solve(self, balances: np.ndarray, at_joint: float) -> np.ndarray:
+        return np.insert(lu_solve(self._factors, balances, check_finite=False), self.operator.joint, at_joint, axis=0)
 
 
 def _bernoulli(x: np.ndarray) -> np.ndarray:
@@ -182,7 +190,7 @@ def _bernoulli(x: np.ndarray) -> np.ndarray:
 def _payable(curves: CollisionCurves, grid: Grid) -> np.ndarray:
     events = curves.integrals(grid.edges)
     for row, channel in enumerate(curves.channels):
-        if channel.process.kind in ("excitation", "ionization"):
+        if channel.process.kind in ("excitation", "ionization") and not channel.superelastic:
             first = int(np.searchsorted(grid.edges, channel.process.threshold_eV))
             if 0 < first < len(grid.centre):
                 events[row, first] += events[row, first - 1]
@@ -190,24 +198,64 @@ def _payable(curves: CollisionCurves, grid: Grid) -> np.ndarray:
     return events
 
 
+def _exchange(
+    curves: CollisionCurves, row: int, grid: Grid, log_f: Callable[[np.ndarray], np.ndarray]
+) -> tuple[np.ndarray, np.ndarray]:
+    """What goes from cell j to cell i by the excitation in a row of the curves and by its reverse, per f of cell j.
+
+    Pieces of energy come from one cell and go into one cell. Those of a cell are moved together so that their mean
+    energy is that of its centre, and shared by two cells after the collision; so number and energy are kept. The
+    reverse takes every piece back. Two arrays, (n, n).
+    """
+    size = len(grid.centre)
+    process = curves.channels[row].process
+    threshold = process.threshold_eV
+    first = int(np.searchsorted(grid.edges, threshold))
+    points = np.unique(np.concatenate([grid.edges, grid.edges + threshold]))
+    points = points[(points >= threshold) & (points <= grid.edges[-1])]
+    if first >= size or len(points) < 2:
+        return np.zeros((size, size)), np.zeros((size, size))
+    middle = 0.5 * (points[1:] + points[:-1])
+    events = curves.integrals_of(row, points)
+    height = log_f(grid.centre)
+    origin = np.maximum(np.searchsorted(grid.edges, middle) - 1, first)
+    amount = events * np.exp(log_f(middle) - height[origin])
+    total = np.bincount(origin, weights=amount, minlength=size)
+    mean = np.bincount(origin, weights=amount * middle, minlength=size) / np.where(total > 0.0, total, 1.0)
+    landing = np.maximum(middle + (grid.centre - mean)[origin] - threshold, grid.centre[0])
+    place, down = _landing(grid, landing, amount, origin)
+    _, up = _landing(grid, landing, events * np.exp(log_f(middle - threshold)), origin)
+    target, source = np.divmod(place, size)
+    up *= process.degeneracy_ratio * np.exp(-height[target])
+    return _matrix(size, place, down), _matrix(size, source * size + target, up)
+
+
+def _matrix(size: int, places: np.ndarray, amounts: np.ndarray) -> np.ndarray:
+    return np.bincount(places, weights=amounts, minlength=size * size).reshape(size, size)
+
+
 def _transfers(curves: CollisionCurves, grid: Grid, events: np.ndarray) -> np.ndarray:
-    """(n, n): change of the number in cell i by inelastic collisions, per f of cell j."""
+    """(n, n): change of the number in cell i by inelastic collisions, per f of cell j; of reversible ones the loss."""
     size = len(grid.centre)
     result = np.zeros((size, size))
     landings = [(np.zeros(0, dtype=np.int64), np.zeros(0))]
-    for channel, event in zip(curves.channels, events, strict=True):
+    reverses = [row for row, channel in enumerate(curves.channels) if channel.superelastic]
+    reversible = {*reverses, *(row - 1 for row in reverses)}
+    for row, (channel, event) in enumerate(zip(curves.channels, events, strict=True)):
         origin = np.flatnonzero(event)
         if channel.process.kind == "elastic" or channel.weight == 0.0 or len(origin) == 0:
             continue
         amount = channel.weight * event[origin]
         result[origin, origin] -= amount
-        left = grid.centre[origin] - channel.process.threshold_eV
+        if row in reversible:
+            continue
+        left = grid.centre[origin] - channel.loss_eV
         for share, number in _products(channel):
             landings.append(_landing(grid, share * left, number * amount, origin))
         if channel.process.kind == "ionization" and channel.process.sharing.kind == "uniform":
             result[:, origin] += _uniform_pair(grid, left, amount)
     place, amount = (np.concatenate(parts) for parts in zip(*landings, strict=True))
-    return result + np.bincount(place, weights=amount, minlength=size * size).reshape(size, size)
+    return result + _matrix(size, place, amount)
 
 
 def _products(channel) -> list[tuple[float, float]]:
