@@ -97,6 +97,31 @@ def test_left_out_processes_are_left_out_where_their_set_is(write):
     assert nitrogen.leave_out == ()
 
 
+LEVELS = """
+[gas]
+temperature_K = 300
+vibrational_temperature_K = [1000, 2000]
+level_fractions = { "oxygen-lawton1978/a1delta" = 0.1 }
+leave_out = ["oxygen-lawton1978/attachment-3body"]
+fractions = [{ "oxygen-lawton1978" = 1 }, { "argon-yamabe1983" = 1 }, { "nitrogen-phelps1985" = 1 }]
+
+[field]
+E_over_N_Td = 10
+"""
+
+
+def test_populations_of_levels(write):
+    points = load_run_file(write(LEVELS)).points
+    assert [point.mixture.describe() for point in points] == [
+        "1 oxygen-lawton1978 (vibration 1000 K; 0.1 in oxygen-lawton1978/a1delta)",
+        "1 oxygen-lawton1978 (vibration 2000 K; 0.1 in oxygen-lawton1978/a1delta)",
+        "1 argon-yamabe1983",  # has no levels that could vibrate
+        "1 nitrogen-phelps1985 (vibration 1000 K)",
+        "1 nitrogen-phelps1985 (vibration 2000 K)",
+    ]
+    assert points[0].mixture.populations(points[0].mixture.gases[0])["a1delta"] == 0.1
+
+
 GAS, FIELD = '[gas]\ntemperature_K = 0\nfractions = { "argon-yamabe1983" = 1 }\n', "[field]\nE_over_N_Td = 10\n"
 FAULTS = {
     "no gas": (FIELD, "[gas] is missing. Add the section, with temperature_K and fractions."),
@@ -106,12 +131,14 @@ FAULTS = {
     ),
     "unknown key": (
         GAS + "presure_Pa = 3\n" + FIELD,
-        "[gas] presure_Pa: unknown key. Known keys: temperature_K, pressure_Pa, fractions, leave_out. "
+        "[gas] presure_Pa: unknown key. Known keys: temperature_K, pressure_Pa, fractions, leave_out, "
+        "vibrational_temperature_K, level_fractions. "
         "Did you mean pressure_Pa?",
     ),
     "misspelt key": (
         GAS.replace("temperature_K", "temperatur_K") + FIELD,
-        "[gas] temperatur_K: unknown key. Known keys: temperature_K, pressure_Pa, fractions, leave_out. "
+        "[gas] temperatur_K: unknown key. Known keys: temperature_K, pressure_Pa, fractions, leave_out, "
+        "vibrational_temperature_K, level_fractions. "
         "Did you mean temperature_K?",
     ),
     "unknown section": (
@@ -187,6 +214,10 @@ FAULTS = {
         GAS + 'leave_out = ["argon/elastic"]\n' + FIELD,
         '[gas] leave_out: "argon/elastic" names no set of this run (argon-yamabe1983). Write "<set>/<process>".',
     ),
+    "unknown set with levels": (
+        GAS + 'level_fractions = { "argon/x" = 0.1 }\n' + FIELD,
+        '[gas] level_fractions: "argon/x" names no set of this run (argon-yamabe1983). Write "<set>/<process>".',
+    ),
     "negative seed": ("seed = -1\n" + GAS + FIELD, "seed = -1: Give a number of 0 or more."),
     "broken seed": ("seed = 1.5\n" + GAS + FIELD, "seed = 1.5: Give a whole number."),
     "title": ("title = 3\n" + GAS + FIELD, "title = 3: Give text in quotes."),
@@ -229,6 +260,14 @@ FAULTS_BELOW = {
     "unknown process to leave out": (
         GAS + 'leave_out = ["argon-yamabe1983/elastik"]\n',
         ("[gas]: leave_out", "argon-yamabe1983/elastik", "Did you mean argon-yamabe1983/elastic?"),
+    ),
+    "vibration of atoms": (
+        GAS + "vibrational_temperature_K = 1000\n",
+        ("[gas]: ", "no set of this mixture has a level marked as vibrational", "Leave it out"),
+    ),
+    "no such level": (
+        GAS + 'level_fractions = { "argon-yamabe1983/total" = 0.1 }\n',
+        ("[gas]: ", '"argon-yamabe1983/total" is not a process of this mixture', "the levels are none"),
     ),
     "per cent": (GAS + "[accuracy]\nmean_energy = 0.5\n", ("[accuracy]: ", "50 %", "divide by 100")),
     "unknown quantity": (
@@ -283,5 +322,12 @@ def test_schema_knows_every_key_of_the_file():
     assert set(schema["properties"]) == {"title", "seed", "gas", "field", "accuracy"}
     keys = {name: set(part["properties"]) for name, part in schema["$defs"].items()}
     assert keys["Sweep"] == {"from", "to", "per_decade"}
-    assert keys["GasSection"] == {"temperature_K", "pressure_Pa", "fractions", "leave_out"}
+    assert keys["GasSection"] == {
+        "temperature_K",
+        "pressure_Pa",
+        "fractions",
+        "leave_out",
+        "vibrational_temperature_K",
+        "level_fractions",
+    }
     assert "E_over_N_Td" in keys["FieldSection"]

@@ -17,6 +17,8 @@ GOOD = {
         "pressure_Pa": 101325,
         "fractions": {"nitrogen-phelps1985": 0.8, "oxygen-lawton1978": 0.2},
         "leave_out": ["oxygen-lawton1978/attachment"],
+        "vibrational_temperature_K": [1000],
+        "level_fractions": {"oxygen-lawton1978/a1delta": 0.1},
     },
     "field": {
         "E_over_N_Td": {"from": 10, "to": 100, "per_decade": 2},

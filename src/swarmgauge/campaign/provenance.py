@@ -73,8 +73,8 @@ def cpu_model() -> str:
 def _parameters(run_file: RunFile) -> dict[str, Any]:
     """All keys of the run file with defaults filled in, sets by their names instead of their paths."""
     parameters = dict(run_file.parameters)
-    mixtures = {mixture.describe(): mixture for mixture in _mixtures(run_file)}
-    parameters["gas"] = {**parameters["gas"], "fractions": [_fractions(mixture) for mixture in mixtures.values()]}
+    fractions = {repr(_fractions(mixture)): _fractions(mixture) for mixture in _mixtures(run_file)}
+    parameters["gas"] = {**parameters["gas"], "fractions": list(fractions.values())}
     if not run_file.accuracy:
         parameters["accuracy"] = {**parameters["accuracy"], **DEFAULT_ACCURACY}
     return parameters

@@ -123,7 +123,7 @@ def _points(model: RunFileModel, folder: Path) -> tuple[Conditions, ...]:
         raise RunFileError(f"[field] E_over_N_Td: {error}") from error
     if 0.0 in fields and 0.0 in model.gas.temperature_K:
         raise RunFileError("[field] E_over_N_Td = 0 at [gas] temperature_K = 0: electrons come to rest. Leave one out.")
-    states = len(model.gas.temperature_K) * len(model.gas.pressures)
+    states = len(model.gas.temperature_K) * len(model.gas.pressures) * len(model.gas.vibrational_temperatures)
     count = len(model.gas.fractions) * states * len(fields)
     if count > MOST_POINTS:
         raise RunFileError(f"{count} points are asked for; at most {MOST_POINTS} are possible. Split the campaign.")
@@ -134,15 +134,28 @@ def _points(model: RunFileModel, folder: Path) -> tuple[Conditions, ...]:
 def _mixtures(section: GasSection, folder: Path) -> list[Mixture]:
     """Every mixture at every temperature and pressure; each set is loaded once, each mixture kept once."""
     gases = {name: _load_gas(name, folder) for fractions in section.fractions for name in fractions}
-    _check_left_out(section.leave_out, [gas.name for gas in gases.values()])
+    _check_sets_of("leave_out", section.leave_out, [gas.name for gas in gases.values()])
+    _check_sets_of("level_fractions", list(section.level_fractions), [gas.name for gas in gases.values()])
+    vibrating = {name for name, gas in gases.items() if any(p.is_level and p.vibrational for p in gas.processes)}
     mixtures: dict[str, Mixture] = {}
     for item, fractions in enumerate(section.fractions, start=1):
         names = {gases[name].name for name in fractions}
         absent = [process for process in section.leave_out if process.split("/")[0] in names]
-        for temperature, pressure in product(section.temperature_K, section.pressures):
-            parts = {gases[name]: fraction for name, fraction in fractions.items()}
+        levels = {level: share for level, share in section.level_fractions.items() if level.split("/")[0] in names}
+        parts = {gases[name]: fraction for name, fraction in fractions.items()}
+        for temperature, pressure, vibrational in product(
+            section.temperature_K, section.pressures, section.vibrational_temperatures
+        ):
             try:
-                mixture = Mixture(parts, temperature_K=temperature, pressure_Pa=pressure, leave_out=absent)
+                mixture = Mixture(
+                    parts,
+                    temperature_K=temperature,
+                    pressure_Pa=pressure,
+                    leave_out=absent,
+                    # A mixture without vibrations has nothing at that temperature; only where none has, it is refused.
+                    vibrational_temperature_K=None if vibrating and vibrating.isdisjoint(fractions) else vibrational,
+                    level_fractions=levels,
+                )
             except InputError as error:
                 where = f"[gas] fractions, item {item}" if len(section.fractions) > 1 else "[gas]"
                 raise RunFileError(f"{where}: {error}") from error
@@ -158,9 +171,9 @@ def _load_gas(name: str, folder: Path) -> Gas:
         raise RunFileError(f"[gas] fractions: {error}") from error
 
 
-def _check_left_out(processes: Sequence[str], sets: Sequence[str]) -> None:
+def _check_sets_of(key: str, processes: Sequence[str], sets: Sequence[str]) -> None:
     for process in processes:
         if process.split("/")[0] not in sets:
             raise RunFileError(
-                f'[gas] leave_out: "{process}" names no set of this run ({", ".join(sets)}). Write "<set>/<process>".'
+                f'[gas] {key}: "{process}" names no set of this run ({", ".join(sets)}). Write "<set>/<process>".'
             )

@@ -80,6 +80,13 @@ class GasSection(_Section):
         _one_or_many(_FRACTIONS),
     ] = Field(examples=[{"nitrogen-phelps1985": 0.8, "oxygen-lawton1978": 0.2}])
     leave_out: list[str] = Field(default=[], examples=[["oxygen-lawton1978/attachment"]])
+    vibrational_temperature_K: _Numbers | None = Field(default=None, examples=[2000])
+    level_fractions: dict[str, _NonNegative] = Field(default={}, examples=[{"oxygen-lawton1978/a1delta": 0.01}])
+
+    @property
+    def vibrational_temperatures(self) -> list[float | None]:
+        """The vibrational temperatures, or the one entry None where levels follow the gas."""
+        return [None] if self.vibrational_temperature_K is None else list(self.vibrational_temperature_K)
 
     @property
     def pressures(self) -> list[float | None]:
