@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from numpy._core._multiarray_umath import __cpu_dispatch__, __cpu_features__
 
-from swarmgauge.gas.power import strict_exp, strict_power
+from swarmgauge.gas.power import strict_exp, strict_log, strict_power
 
 EXPONENTS = [-3.0, -1.77, -1.0, -0.9, -0.5, 0.0, 0.33, 0.5, 1.0, 2.0, 2.53]
 
@@ -76,15 +76,26 @@ def test_ends_of_the_exponential():
     assert strict_exp(np.ones((2, 3))).shape == (2, 3)
 
 
+@settings(derandomize=True)
+@given(st.floats(1e-300, 1e300) | st.floats(0.9, 1.1))
+def test_any_logarithm(x):
+    with decimal.localcontext() as context:
+        context.prec = 40
+        reference = decimal.Decimal(x).ln()
+    error = float(abs(decimal.Decimal(float(strict_log(np.array(x)))) - reference))
+    assert error < 1e-15 * max(1.0, abs(float(reference)))
+
+
 PROGRAM = """
 import hashlib, json
 import numpy as np
 from swarmgauge.gas import Mixture
-from swarmgauge.gas.power import strict_exp, strict_power
+from swarmgauge.gas.power import strict_exp, strict_log, strict_power
 digest = hashlib.sha256()
 for exponent in (-1.77, -0.9, 0.33, 2.53):
     digest.update(strict_power(1e-8 * np.cumprod(np.full(3000, 1.01)), exponent).tobytes())
 digest.update(strict_exp(np.arange(-60000, 6000) / 97.0).tobytes())
+digest.update(strict_log(np.arange(1, 60000) / 97.0).tobytes())
 for name in ("nitrogen-phelps1985", "carbon-monoxide-land1978"):
     mixture = Mixture({name: 1.0}, temperature_K=900.0)
     digest.update(json.dumps(mixture.canonical()).encode())

@@ -1,10 +1,11 @@
 """From sums of cohorts to coefficients: the formulas, each a function of the mean sums."""
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
-from swarmgauge.gas.constants import E_CHARGE, SPEED_1_EV, TOWNSEND
+from swarmgauge.gas.constants import BOLTZMANN, E_CHARGE, SPEED_1_EV, TOWNSEND
 from swarmgauge.kernel.history import (
     EFFECTIVE_SIZE,
     END_R,
@@ -28,7 +29,8 @@ from swarmgauge.kernel.history import (
 from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
 from .cohort import SumsLayout, layout_of, serial_sum
-from .curves import UNIT_CROSS_SECTION_M2
+from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
+from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order
 
@@ -59,6 +61,7 @@ class Reducer:
     def quantities(self, rows: np.ndarray) -> dict[str, np.ndarray]:
         """Quantity name to values, one per row, in the order of output."""
         result = {**self.transport(rows), **self.rates(rows)}
+        result.update(self.maxwellian(result["mean_energy"]))
         result.update(self.power(rows, result))
         return {name: result[name] for name in in_order(result)}
 
@@ -125,17 +128,11 @@ class Reducer:
         """Rate of every process per density of its gas, in whatever level, and the frequencies of the mixture."""
         mixture = self.plan.mixture
         per_target = self.part(rows, "rate")
-        result: dict[str, np.ndarray] = {}
+        result = {}
         sums: dict[str, np.ndarray] = {}
         for column, curve in enumerate(self.plan.curves + self.plan.passive_curves):
-            gas = mixture.gases[curve.gas]
             rate = per_target[:, column] * RATE_UNIT
-            name = f"{gas.name}/{curve.process.id}"
-            if curve.process.third_body is not None:
-                density = mixture.body_density_m3(gas, curve.process)
-                result[curve.rate_name + name] = rate / density if density > 0.0 else np.zeros(len(rows))
-            else:
-                result[curve.rate_name + name] = rate
+            result[self._rate_name(curve)] = self._per_body(curve, rate)
             if column < len(self.plan.curves):
                 share = mixture.fractions[curve.gas] * rate
                 for key in ("collision", curve.process.kind):
@@ -154,6 +151,36 @@ class Reducer:
         mean_speed = serial_sum(lab * speed) / serial_sum(lab) * SPEED_1_EV
         result["mean_free_path_times_N"] = mean_speed / sums["collision"]
         return result
+
+    def _rate_name(self, curve: ProcessCurve) -> str:
+        return f"{curve.rate_name}{self.plan.mixture.gases[curve.gas].name}/{curve.process.id}"
+
+    def _per_body(self, curve: ProcessCurve, rate: np.ndarray) -> np.ndarray:
+        """A rate per density of the target, and of third bodies where the process needs one."""
+        if curve.process.third_body is None:
+            return rate
+        density = self.plan.mixture.body_density_m3(self.plan.mixture.gases[curve.gas], curve.process)
+        return rate / density if density > 0.0 else np.zeros_like(rate)
+
+    def maxwellian(self, mean_energy: np.ndarray) -> dict[str, np.ndarray]:
+        """Every rate as it would be in a Maxwellian of the same mean energy, (rows,)."""
+        mixture = self.plan.mixture
+        thermal_eV = mixture.temperature_K * BOLTZMANN / E_CHARGE
+        result = {}
+        for place, gas in enumerate(mixture.gases):
+            curves, averages = self._maxwellian_rates[place]
+            frequencies = averages.frequencies(mean_energy + 1.5 * thermal_eV * gas.mass_ratio)
+            for column, curve in enumerate(curves):
+                rate = self._per_body(curve, frequencies[:, column] * RATE_UNIT)
+                result[f"maxwellian_{self._rate_name(curve)}"] = rate
+        return result
+
+    @cached_property
+    def _maxwellian_rates(self) -> list[tuple[list[ProcessCurve], MaxwellianRates]]:
+        """The curves of each gas, and their averages."""
+        curves = self.plan.curves + self.plan.passive_curves
+        groups = [[curve for curve in curves if curve.gas == place] for place in range(len(self.plan.mixture.gases))]
+        return [(group, MaxwellianRates(group)) for group in groups]
 
     def power(self, rows: np.ndarray, known: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
         """Field heating and where it goes: elastic recoil, thresholds, attached electrons, new electrons.
@@ -199,10 +226,9 @@ class Reducer:
         for curve in self.plan.curves + self.plan.passive_curves:
             gas = mixture.gases[curve.gas]
             share = float(mixture.fractions[curve.gas])
-            name = f"{gas.name}/{curve.process.id}"
             body = mixture.body_density_m3(gas, curve.process)
             if share > 0.0 and body > 0.0 and curve.high.any():  # else it cannot happen: the rate is exactly 0
-                bounds[curve.rate_name + name] = per_time / (share * body)
+                bounds[self._rate_name(curve)] = per_time / (share * body)
         for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
             bounds[name] = per_time
         return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}

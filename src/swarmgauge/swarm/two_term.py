@@ -201,6 +201,8 @@ def _values(balance: Balance, f: np.ndarray, coefficients: Transport, E_over_N_T
     for channel, rate in zip(operator.curves.channels, per_target.tolist(), strict=True):
         values[channel.rate_name] = channel.population * rate
         frequency[channel.process.kind] += channel.weight * rate
+    for channel, rate in zip(operator.curves.channels, operator.curves.maxwellian_rates(mean_energy), strict=True):
+        values[f"maxwellian_{channel.rate_name}"] = channel.population * SPEED_1_EV * float(rate)
     values["ionization_frequency_over_N"] = frequency["ionization"]
     values["attachment_frequency_over_N"] = frequency["attachment"]
     values["net_frequency_over_N"] = frequency["ionization"] - frequency["attachment"]

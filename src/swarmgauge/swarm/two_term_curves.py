@@ -4,6 +4,7 @@ Every cross section is taken as linear in energy between the points of a mesh th
 is fine enough (0.7 % steps) for formulas. Narrow peaks are then integrated in full, however wide a cell is.
 """
 
+import math
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -95,6 +96,17 @@ class CollisionCurves:
     def mean_section(self, row: int, points: np.ndarray) -> np.ndarray:
         """Means of one cross section between successive points, (len(points) - 1,)."""
         return np.diff(_Antiderivative(self.mesh, self.sections[row : row + 1], 0)(points)[0]) / np.diff(points)
+
+    def maxwellian_rates(self, mean_energy_eV: float) -> np.ndarray:
+        """<sqrt(energy) x cross section> over the Maxwellian of a mean energy, (channels,), by two points a step."""
+        theta = mean_energy_eV / 1.5
+        steps = np.diff(self.mesh)
+        total = np.zeros(len(self.sections))
+        for part in (0.5 - math.sqrt(1.0 / 12.0), 0.5 + math.sqrt(1.0 / 12.0)):
+            energy = self.mesh[:-1] + part * steps
+            section = self.sections[:, :-1] + part * np.diff(self.sections, axis=1)
+            total += section @ (0.5 * steps * energy * np.exp(-energy / theta))
+        return total * (2.0 / math.sqrt(math.pi * theta**3))
 
     @cached_property
     def _rates(self) -> "_Antiderivative":
