@@ -36,6 +36,7 @@ def build_parser() -> argparse.ArgumentParser:
     run.add_argument("--out", metavar="DIR", type=Path, help="results folder (default: beside the run file)")
     run.add_argument("--workers", metavar="N", type=_count, help="threads (default: the cores this process may use)")
     run.add_argument("--max-minutes", metavar="M", type=_minutes, help="wall clock for the whole campaign")
+    run.add_argument("--preview", action="store_true", help="two-term values of all points, in seconds")
     run.add_argument("--dry-run", action="store_true", help="list the points and stop; nothing is written")
     run.add_argument("--quiet", action="store_true", help="print nothing but faults")
     run.add_argument("--json", action="store_true", help="print JSON instead of the table")
@@ -52,7 +53,7 @@ def run_sets(arguments: argparse.Namespace) -> int:
 
 
 def run_run(arguments: argparse.Namespace) -> int:
-    """Run a campaign, or list its points."""
+    """Run a campaign, preview it, or list its points."""
     from .campaign import load_run_file
     from .campaign.locate import locate
     from .campaign.summary import points_json, points_table
@@ -61,7 +62,7 @@ def run_run(arguments: argparse.Namespace) -> int:
     run_file = load_run_file(path)
     folder = arguments.out or folder
     if not arguments.dry_run:
-        return _compute(run_file, folder, arguments)
+        return (_preview if arguments.preview else _compute)(run_file, folder, arguments)
     if not arguments.quiet:
         _print(
             [json.dumps(points_json(run_file, folder), indent=1)] if arguments.json else points_table(run_file, folder)
@@ -121,6 +122,17 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
     if outcome.interrupted:
         return INTERRUPTED
     return MISSED if outcome.missed else DONE
+
+
+def _preview(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:
+    from .campaign.preview import preview_json, preview_lines, run_preview
+
+    preview = run_preview(run_file, folder, workers=arguments.workers)
+    if arguments.json:
+        _print([json.dumps(preview_json(preview), indent=1)])
+    elif not arguments.quiet:
+        _print(preview_lines(preview))
+    return DONE
 
 
 def _print(lines: Iterable[str]) -> None:

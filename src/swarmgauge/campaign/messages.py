@@ -66,7 +66,7 @@ def remedies(points: Sequence[Point], max_minutes: float) -> Iterator[str]:
     """
     missed = [point for point in points if missed_target(point)]
     for point in missed[:MOST_REMEDIES]:
-        yield from wrapped(f"! {field_text(point)} Td: {_remedy(point, max_minutes)}")
+        yield from wrapped(f"! {field_text(point.conditions.field)} Td: {_remedy(point, max_minutes)}")
     if len(missed) > MOST_REMEDIES:
         yield f"! and {len(missed) - MOST_REMEDIES} more points (column `reached` in coefficients.csv)"
 
@@ -77,7 +77,7 @@ def warnings(points: Sequence[Point]) -> Iterator[str]:
     for point in points:
         conditions = point.conditions
         for text in (*point.warnings, *outside(conditions.mixture, conditions.field)):
-            kinds.setdefault(text.partition(":")[0], []).append((field_text(point), text))
+            kinds.setdefault(text.partition(":")[0], []).append((field_text(point.conditions.field), text))
     found = list(kinds.values())
     for kind in found[:MOST_WARNINGS]:
         fields, texts = zip(*kind, strict=True)

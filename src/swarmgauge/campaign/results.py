@@ -12,7 +12,8 @@ from typing import Any
 
 import numpy as np
 
-from swarmgauge.gas import InputError
+from swarmgauge.gas import InputError, Mixture
+from swarmgauge.swarm.field import Field
 from swarmgauge.swarm.point import Point
 
 COEFFICIENTS = "coefficients.csv"
@@ -20,7 +21,7 @@ DISTRIBUTIONS = "distributions.csv"
 PROVENANCE = "provenance.json"
 
 # Column to type: text, number (empty is NaN) or count.
-COEFFICIENT_COLUMNS: dict[str, type] = {
+CONDITION_COLUMNS: dict[str, type] = {
     "point": str,
     "mixture": str,
     "temperature_K": float,
@@ -29,6 +30,9 @@ COEFFICIENT_COLUMNS: dict[str, type] = {
     "B_over_N_Hx": float,
     "B_angle_deg": float,
     "angular_frequency_over_N": float,
+}
+COEFFICIENT_COLUMNS: dict[str, type] = {
+    **CONDITION_COLUMNS,
     "quantity": str,
     "value": float,
     "standard_error": float,
@@ -62,26 +66,16 @@ def short(key: str) -> str:
 
 def coefficients_csv(points: Iterable[tuple[str, Point]]) -> str:
     """Text of coefficients.csv for (key, point) pairs."""
-    return _csv(COEFFICIENT_COLUMNS, (row for key, point in points for row in _coefficient_rows(key, point)))
+    return csv_text(COEFFICIENT_COLUMNS, (row for key, point in points for row in _coefficient_rows(key, point)))
 
 
 def distributions_csv(points: Iterable[tuple[str, Point]]) -> str:
     """Text of distributions.csv for (key, point) pairs."""
-    return _csv(DISTRIBUTION_COLUMNS, (row for key, point in points for row in _distribution_rows(key, point)))
+    return csv_text(DISTRIBUTION_COLUMNS, (row for key, point in points for row in _distribution_rows(key, point)))
 
 
 def _coefficient_rows(key: str, point: Point) -> Iterator[list[Any]]:
-    mixture, field = point.conditions.mixture, point.conditions.field
-    start = [
-        short(key),
-        mixture.describe(),
-        mixture.temperature_K,
-        mixture.pressure_Pa,
-        field.E_over_N_Td,
-        field.B_over_N_Hx,
-        field.B_angle_deg,
-        field.angular_frequency_over_N,
-    ]
+    start = [short(key), *condition_cells(point.conditions.mixture, point.conditions.field)]
     for name, estimate in point.estimates.items():
         status = point.targets.get(name)
         judged = [None, None] if status is None else [status.target, "yes" if status.reached else "no"]
@@ -92,6 +86,19 @@ def _coefficient_rows(key: str, point: Point) -> Iterator[list[Any]]:
         yield [*start, name, *value, bound, two_term, None, *judged]
 
 
+def condition_cells(mixture: Mixture, field: Field) -> list[Any]:
+    """The cells of CONDITION_COLUMNS but for the first, the point."""
+    return [
+        mixture.describe(),
+        mixture.temperature_K,
+        mixture.pressure_Pa,
+        field.E_over_N_Td,
+        field.B_over_N_Hx,
+        field.B_angle_deg,
+        field.angular_frequency_over_N,
+    ]
+
+
 def _distribution_rows(key: str, point: Point) -> Iterator[list[Any]]:
     eedf = point.eedf
     edges = eedf.energy_edges_eV.tolist()
@@ -100,7 +107,8 @@ def _distribution_rows(key: str, point: Point) -> Iterator[list[Any]]:
         yield [short(key), *row]
 
 
-def _csv(columns: Iterable[str], rows: Iterable[list[Any]]) -> str:
+def csv_text(columns: Iterable[str], rows: Iterable[list[Any]]) -> str:
+    """A table as text: one header row, then the rows."""
     text = io.StringIO()
     writer = csv.writer(text, lineterminator="\n")
     writer.writerow(columns)
@@ -141,6 +149,11 @@ class Results:
         rows = table[chosen]
         return rows[np.argsort(rows["E_over_N_Td"], kind="stable")]
 
+    @property
+    def ratio_to_two_term(self) -> tuple[np.ndarray, np.ndarray]:
+        """Monte Carlo over two-term value, and its standard error, for each row of `coefficients`; NaN without one."""
+        return ratio_to_two_term(self.coefficients)
+
     def eedf(self, point: str) -> np.ndarray:
         """Rows of `distributions` of one point, named as in `coefficients`."""
         return self.distributions[self.distributions["point"] == point]
@@ -153,6 +166,12 @@ class Results:
         quantities = len(set(table["quantity"].tolist()))
         points = len(set(table["point"].tolist()))
         return f"Results({self.path.name}: {points} points{reach}; {mixtures}; {quantities} quantities)"
+
+
+def ratio_to_two_term(rows: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Monte Carlo over two-term value, and its standard error, for rows of coefficients; NaN where there is none."""
+    known = np.where((rows["two_term"] != 0.0) & np.isnan(rows["upper_bound"]), rows["two_term"], np.nan)
+    return rows["value"] / known, rows["standard_error"] / np.abs(known)
 
 
 def open_results(folder: str | Path) -> Results:

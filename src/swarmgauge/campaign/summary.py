@@ -24,7 +24,7 @@ def points_table(run_file: RunFile, folder: Path) -> Iterator[str]:
         points = list(block)
         yield from wrapped(f"{describe(points[0].mixture)}:")
         for point in points:
-            key = _key(point, run_file)
+            key = point_key_of(point, run_file)
             kept = "there" if store.has(key) else "to do"
             yield f"    {short(key)}  {point.field.E_over_N_Td:>10g} Td  {kept}"
 
@@ -32,9 +32,9 @@ def points_table(run_file: RunFile, folder: Path) -> Iterator[str]:
 def points_json(run_file: RunFile, folder: Path) -> list[dict[str, Any]]:
     """The points of a run file, and which of them the folder holds."""
     store = ResultsFolder(folder)
-    keys = [_key(point, run_file) for point in run_file.points]
+    keys = [point_key_of(point, run_file) for point in run_file.points]
     return [
-        {"point": key, **_conditions(point), "there": store.has(key)}
+        {"point": key, **conditions_json(point), "there": store.has(key)}
         for key, point in zip(keys, run_file.points, strict=True)
     ]
 
@@ -51,7 +51,7 @@ def outcome_json(outcome: Outcome) -> dict[str, Any]:
         "points": [
             {
                 "point": key,
-                **_conditions(point.conditions),
+                **conditions_json(point.conditions),
                 "status": point.status,
                 "warnings": list(point.warnings),
                 "estimates": {name: _estimate(estimate) for name, estimate in point.estimates.items()},
@@ -61,11 +61,13 @@ def outcome_json(outcome: Outcome) -> dict[str, Any]:
     }
 
 
-def _key(point: Conditions, run_file: RunFile) -> str:
+def point_key_of(point: Conditions, run_file: RunFile) -> str:
+    """The key of a point of a run file."""
     return point_key(point.mixture, point.field, run_file.seed, run_file.accuracy)
 
 
-def _conditions(point: Any) -> dict[str, Any]:
+def conditions_json(point: Any) -> dict[str, Any]:
+    """The conditions of a point."""
     mixture = point.mixture
     return {
         "mixture": mixture.describe(),

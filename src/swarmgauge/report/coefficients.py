@@ -9,6 +9,8 @@ from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 from matplotlib.ticker import LogFormatterSciNotation, LogLocator, NullFormatter
 
+from swarmgauge.campaign.results import ratio_to_two_term
+
 from .groups import Group
 from .style import COLOURS, DASHES, GREY, MARKERS, WIDTH_INCHES
 
@@ -42,6 +44,8 @@ PANELS = (
     Panel(r"net frequency $(\nu_i-\nu_a)/N$ (m$^3$/s)", {"net_frequency_over_N": ""}),
 )
 _PLAIN = (1e-3, 1e4)  # numbers in between are labelled without a power of ten
+_MAIN, _RATIO = 3.0, 1.0  # heights of a panel and of the ratios below it
+_SMALLEST_SPREAD, _LARGEST_SPREAD = 0.02, 0.5  # of the ratios about 1 that are shown
 _DECADES_AROUND_ZERO = 4  # a signed axis is linear below this part of its largest value
 
 
@@ -50,9 +54,13 @@ def coefficients_figure(groups: Sequence[Group], note: str) -> Figure:
 
     note : a line under the title.
     """
-    figure = Figure(figsize=(WIDTH_INCHES, 8.6), layout="constrained")
-    for axes, panel in zip(figure.subplots(3, 2).flat, PANELS, strict=True):
-        _draw(axes, panel, groups)
+    figure = Figure(figsize=(WIDTH_INCHES, 10.2), layout="constrained")
+    heights = [_MAIN, _RATIO] * (len(PANELS) // 2)
+    rows = figure.subplots(len(PANELS), 2, sharex="col", gridspec_kw={"height_ratios": heights})
+    for place, panel in enumerate(PANELS):
+        row, column = 2 * (place // 2), place % 2
+        _draw(rows[row, column], panel, groups)
+        _draw_ratio(rows[row + 1, column], panel, groups)
     figure.suptitle(note, x=0.01, ha="left", fontsize=8, color=GREY)
     if len(groups) > 1:
         lines = [Line2D([], [], color=COLOURS[number], linewidth=2.0) for number in range(len(groups))]
@@ -64,12 +72,29 @@ def _draw(axes: Axes, panel: Panel, groups: Sequence[Group]) -> None:
     for kind, quantity in enumerate(panel.quantities):
         for number, group in enumerate(groups):
             _curve(axes, group.quantity(quantity), COLOURS[number if len(groups) > 1 else kind], kind)
-    axes.set_xlabel(r"$E/N$ (Td)")
     axes.set_ylabel(panel.axis)
     _scale(axes, [group.quantity(quantity) for group in groups for quantity in panel.quantities])
     if len(panel.quantities) > 1:
         handles = [_sample(COLOURS[0 if len(groups) > 1 else kind], kind) for kind in range(len(panel.quantities))]
         axes.legend(handles, panel.quantities.values())
+
+
+def _draw_ratio(axes: Axes, panel: Panel, groups: Sequence[Group]) -> None:
+    """Monte Carlo over two-term value, with the error of the former."""
+    spread = [_SMALLEST_SPREAD]
+    for kind, quantity in enumerate(panel.quantities):
+        for number, group in enumerate(groups):
+            rows = group.quantity(quantity)
+            ratio, error = ratio_to_two_term(rows)
+            shade = COLOURS[number if len(groups) > 1 else kind]
+            face = shade if kind == 0 else "white"
+            axes.errorbar(rows["E_over_N_Td"], ratio, error, color=shade, fmt=MARKERS[kind], markerfacecolor=face)
+            spread += np.abs(ratio - 1.0)[np.isfinite(ratio)].tolist()
+    reach = 1.15 * min(max(spread), _LARGEST_SPREAD)  # a ratio near a zero of the value would hide all others
+    axes.set_ylim(1.0 - reach, 1.0 + reach)
+    axes.axhline(1.0, color=GREY, linewidth=0.6)
+    axes.set_ylabel("ratio")
+    axes.set_xlabel(r"$E/N$ (Td)")
 
 
 def _sample(shade: str, kind: int) -> Line2D:
@@ -105,6 +130,7 @@ def _scale(axes: Axes, curves: Sequence[np.ndarray]) -> None:
         axes.xaxis.set_major_locator(LogLocator(subs=(1.0, 3.0)))
         axes.xaxis.set_major_formatter("{x:g}")
     values = np.where(np.isnan(rows["upper_bound"]), rows["value"], rows["upper_bound"])
+    values = np.concatenate([values, rows["two_term"][np.isnan(rows["upper_bound"])]])
     values = values[np.isfinite(values) & (values != 0.0)]
     if values.size == 0:
         return

@@ -15,7 +15,10 @@ from .groups import Group, groups_of
 from .style import COLOURS, RC
 
 MOST_GROUPS = len(COLOURS)
-_KEY = "Points: Monte Carlo with one standard error. Lines: two-term solution. Arrows: 95 % upper bounds."
+_KEY = (
+    "Points: Monte Carlo with one standard error. Lines: two-term solution; ratio: Monte Carlo to it. "
+    "Arrows: 95 % upper bounds."
+)
 
 
 def draw_figures(folder: str | Path) -> list[Path]:
