@@ -11,8 +11,10 @@ _HOME = {
     "Process": "gas",
     "load_set": "gas",
     "open_results": "campaign",
+    "saturation_pressure_Pa": "gas",
     "simulate": "swarm",
     "simulate_difference": "swarm",
+    "water_fraction": "gas",
 }
 __all__ = sorted(_HOME)
 __version__ = "0.1.0"

@@ -7,6 +7,7 @@ from .errors import InputError, MixtureError, ProcessError, SetFileError
 
 if TYPE_CHECKING:
     from .gas import Gas
+    from .humidity import saturation_pressure_Pa, water_fraction
     from .laws import PowerLaw, Ramp, Table
     from .library import load_named, load_named_or_path, shipped_sets
     from .mixture import Mixture
@@ -30,9 +31,11 @@ __all__ = [
     "load_named",
     "load_named_or_path",
     "load_set",
+    "saturation_pressure_Pa",
     "set_file_schema",
     "set_text",
     "shipped_sets",
+    "water_fraction",
     "write_set",
 ]
 _HOME = {
@@ -46,9 +49,11 @@ _HOME = {
     "load_named": "library",
     "load_named_or_path": "library",
     "load_set": "setfile",
+    "saturation_pressure_Pa": "humidity",
     "set_file_schema": "schema",
     "set_text": "writer",
     "shipped_sets": "library",
+    "water_fraction": "humidity",
     "write_set": "writer",
 }
 
