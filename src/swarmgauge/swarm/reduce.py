@@ -26,13 +26,14 @@ from swarmgauge.kernel.history import (
     PATH_ACROSS_SQUARED,
     PATH_SQUARED,
 )
-from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
+from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, SPEED_CELLS, speed_edges
 
 from .cohort import SumsLayout, layout_of, serial_sum
 from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
 from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order
+from .tables import LEAST_SHARE
 
 DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
 UNSEEN_EVENTS = 2.9957322735539909  # -ln 0.05: 95 % upper bound on the expected number of events where none was seen
@@ -217,18 +218,26 @@ class Reducer:
         return result
 
     def upper_bounds(self, rows: np.ndarray, names: dict[str, np.ndarray]) -> dict[str, float]:
-        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the time of all electrons."""
+        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the time of all electrons.
+
+        A rate comes from all candidates of its gas; there are at least as many of them as events, and in a gas that is
+        scarce as LEAST_SHARE of all collisions.
+        """
         mixture = self.plan.mixture
         windows, alive = (float(rows[:, self.layout.slices[name]].sum()) for name in ("windows", "alive"))
         total_time = 0.5 * (windows * self.plan.electrons + alive) * self.plan.window_time
         per_time = UNSEEN_EVENTS / total_time * RATE_UNIT
+        tables = self.plan.tables.collision.reshape(len(mixture.gases), SPEED_CELLS, 4)
+        all_collisions = np.maximum(np.cumsum(tables[:, :, 3], axis=0)[-1], np.finfo(float).tiny)
         bounds: dict[str, float] = {}
         for curve in self.plan.curves + self.plan.passive_curves:
             gas = mixture.gases[curve.gas]
+            if not curve.high.any():  # it cannot happen: the rate is exactly 0
+                continue
             share = float(mixture.fractions[curve.gas])
-            body = mixture.body_density_m3(gas, curve.process)
-            if share > 0.0 and body > 0.0 and curve.high.any():  # else it cannot happen: the rate is exactly 0
-                bounds[self._rate_name(curve)] = per_time / (share * body)
+            if share < LEAST_SHARE:
+                share = LEAST_SHARE / float((curve.high / all_collisions).max())
+            bounds[self._rate_name(curve)] = per_time / (share * mixture.body_density_m3(gas, curve.process))
         for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
             bounds[name] = per_time
         return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}

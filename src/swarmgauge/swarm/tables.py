@@ -23,6 +23,7 @@ from .curves import ProcessCurve, process_threshold
 TOWNSEND_IN_KERNEL_UNITS = 0.05  # acceleration (E/N) / 2e-20 V m^2
 NEUTRAL_REACH = 9.5  # standard deviations: the kernel's normal numbers end at 6.67 in a pair, 9.43 in three dimensions
 LARGEST_TIME = 1e300
+LEAST_SHARE = 1.0 / 64.0  # of the candidates of a mixture goes to every one of its gases
 _KIND = {"excitation": EXCITATION, "ionization": IONIZATION, "attachment": ATTACHMENT}
 _SHARING = {"uniform": SHARE_UNIFORM, "equal": SHARE_EQUAL, "fixed": SHARE_FIXED}
 # Gauss points as digits, because numpy finds them by LAPACK, whose last bits depend on the processor.
@@ -153,6 +154,8 @@ def majorants(
             )
             last = np.clip(np.searchsorted(edges, fastest + reach, side="right") - 1, first, SPEED_CELLS - 1)
             bound[row] = _largest([level[row : row + 1] for level in levels], first, last)[0]
+        if len(sigma) > 1:  # null events of traces and minorities: without them their rates would not be seen
+            bound = np.maximum(bound, LEAST_SHARE * np.cumsum(bound, axis=0)[-1])
         cumulated = np.cumsum(bound * (1.0 + 1e-12), axis=0)
         total = np.maximum(cumulated[-1], 1e-12)
         flight = window / acceleration if acceleration > 0 else LARGEST_TIME
