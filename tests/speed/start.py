@@ -1,7 +1,8 @@
 """What the two-term start saves: python tests/speed/start.py
 
 Cohorts of argon at 1 Td from three starts, each followed until its mean energy first comes within 3 % of the steady
-one, some three times what noise is left: a Maxwellian at the temperature of the gas, a Maxwellian of the steady mean energy, and the two-term solution.
+one, some three times what noise is left: a Maxwellian at the temperature of the gas, a Maxwellian of the steady mean
+energy, and the two-term solution.
 """
 
 from concurrent.futures import ThreadPoolExecutor

@@ -8,9 +8,11 @@ coefficients; the sums are derived in DEVELOPERS.md)
     D_flux = Cov(Z + z, v_z),   W_bulk = <v_z> + Cov(Z + z, R),
     D_bulk = D_flux + 1/2 <(dZ^2 - <dZ^2>) R>,   R = nu_ionization - nu_attachment.
 
-Flux sums are exact time integrals: along one path the integral of (Z + z) v_z dt is Z z + z^2 / 2. They are taken at
-the end of each electron's path (window end or attachment); a child, which copies z of its parent, takes what stood
-there at its birth with a minus sign. The R sums are taken over the population at the end of each window.
+Flux sums are exact time integrals: along one path the integral of (Z + z) v_z dt is Z z + z^2 / 2, that of (Z + z)^2
+v_z dt is Z^2 z + Z z^2 + z^3 / 3. They are taken at the end of each electron's path (window end or attachment); a
+child, which copies z of its parent, takes what stood there at its birth with a minus sign. The R sums are taken over
+the population at the end of each window, and so are those with the energy, which have no such integral. What is of
+third order or holds the energy is kept for the longest lag alone.
 """
 
 import math
@@ -34,7 +36,11 @@ PATH_SQUARED = 1  # z^2 / 2: integral of z v_z
 PATH_ACROSS_SQUARED = 2  # (x^2 + y^2) / 2
 END_WEIGHT, END_R = 3, 4  # at window ends: 1 and R
 MEMORIES, FAMILIES, EFFECTIVE_SIZE = 5, 6, 7  # see `ancestry`
-POINT_SUMS = 8
+PATH_ZZ_VZ = 8  # integral of (Z + z)^2 v_z, longest lag
+END_ZZZ, END_ZZZ_R = 9, 10  # at window ends, longest lag
+END_VZ, END_ENERGY, END_ENERGY_VZ = 11, 12, 13  # at window ends; energy is w^2
+END_Z_VZ, END_XY_VXY, END_Z_ENERGY_VZ, END_XY_ENERGY_VXY = 14, 15, 16, 17  # at window ends, longest lag
+POINT_SUMS = 18
 
 
 @njit(forceinline=True)
@@ -60,6 +66,8 @@ def score_path(lane, sign, elapsed, rows, history, lag_sums, point_sums, lanes, 
         store(lag_sums, at, load(lag_sums, at) + weight * z * past_z)
         at = LAG_XY_VXY * lags + k
         store(lag_sums, at, load(lag_sums, at) + weight * past_across)
+    past_z = load(history, row + 3 * lags - 1)
+    point_sums[PATH_ZZ_VZ] += weight * z * (past_z * (past_z + z) + z * z * (1.0 / 3.0))
 
 
 @njit(forceinline=True)
@@ -82,7 +90,8 @@ def score_window_end(lane, net_frequency, rows, extended, lag_sums, point_sums, 
     vx = load(rows, lane + VX * lanes)
     vy = load(rows, lane + VY * lanes)
     vz = load(rows, lane + VZ * lanes)
-    cell, fraction = speed_cell(math.sqrt(vx * vx + vy * vy + vz * vz))
+    energy = vx * vx + vy * vy + vz * vz
+    cell, fraction = speed_cell(math.sqrt(energy))
     low = load_table(net_frequency, 2 * cell)
     rate = low + fraction * (load_table(net_frequency, 2 * cell + 1) - low)
     point_sums[END_WEIGHT] += weight
@@ -105,3 +114,16 @@ def score_window_end(lane, net_frequency, rows, extended, lag_sums, point_sums, 
         store(lag_sums, at, load(lag_sums, at) + weight * across)
         at = LAG_TT_R * lags + k
         store(lag_sums, at, load(lag_sums, at) + weight * rate * across)
+    x = load(extended, row + lags - 1)
+    y = load(extended, row + 2 * lags - 1)
+    z = load(extended, row + 3 * lags - 1)
+    along, across = weight * z * vz, weight * (x * vx + y * vy)
+    point_sums[END_ZZZ] += weight * z * z * z
+    point_sums[END_ZZZ_R] += weight * rate * z * z * z
+    point_sums[END_VZ] += weight * vz
+    point_sums[END_ENERGY] += weight * energy
+    point_sums[END_ENERGY_VZ] += weight * energy * vz
+    point_sums[END_Z_VZ] += along
+    point_sums[END_XY_VXY] += across
+    point_sums[END_Z_ENERGY_VZ] += energy * along
+    point_sums[END_XY_ENERGY_VXY] += energy * across

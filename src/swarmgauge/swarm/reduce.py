@@ -30,11 +30,13 @@ from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, SPEED_CELLS, speed_
 
 from .cohort import SumsLayout, layout_of, serial_sum
 from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
+from .higher_order import energy_diffusion, skewness_flux, skewness_source
 from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order
 from .tables import LEAST_SHARE
 
+SKEWNESS_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2**2  # Q N^2, 1/(m^3 s)
 DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
 UNSEEN_EVENTS = 2.9957322735539909  # -ln 0.05: 95 % upper bound on the expected number of events where none was seen
 
@@ -82,30 +84,53 @@ class Reducer:
 
     def transport(self, rows: np.ndarray) -> dict[str, np.ndarray]:
         """Mean energy, drift and diffusion, flux and bulk; sums as derived in kernel.history."""
-        lag = rows[:, self.layout.slices["lag"]].reshape(len(rows), LAG_SUMS, self.plan.lags)[:, :, -1]
+        lags = rows[:, self.layout.slices["lag"]].reshape(len(rows), LAG_SUMS, self.plan.lags)
+        lag = lags[:, :, -1]
         point = rows[:, self.layout.slices["point"]]
         time = rows[:, self.layout.slices["time"]][:, 0]
         drift = point[:, PATH] / time
         mean_z = (lag[:, LAG_Z_TIME] + rows[:, self.layout.slices["z_time"]][:, 0]) / time
         diffusion_l = (lag[:, LAG_Z_VZ] + point[:, PATH_SQUARED]) / time - mean_z * drift
         diffusion_t = 0.5 * (lag[:, LAG_XY_VXY] + point[:, PATH_ACROSS_SQUARED]) / time
-        bulk = (drift, diffusion_l, diffusion_t)
+        rate = point[:, END_R] / point[:, END_WEIGHT]
+        growth = rate * self.plan.window_time
+        skewness = skewness_flux(lags, point, time, mean_z, drift, diffusion_l, growth)
+        bulk = flux = (drift, diffusion_l, diffusion_t, skewness)
         if self._population_changes():
-            bulk = self._bulk(lag, point, *bulk)
-        result = {"mean_energy": self.part(rows, "energy")[:, 0]}
-        names = (("flux", (drift, diffusion_l, diffusion_t)), ("bulk", bulk))
+            bulk = (*self._bulk(lag, point, *flux[:3]), skewness + skewness_source(lag, point, rate))
+        energy = self.part(rows, "energy")[:, 0]
+        result = {"mean_energy": energy, **self._energy_transport(rows, lag, point, energy, flux)}
         field = self.plan.field.E_over_N_Td * TOWNSEND
-        for kind, (w, dl, dt) in names:
+        for kind, (w, dl, dt, q) in (("flux", flux), ("bulk", bulk)):
             result[f"diffusion_L_times_N_{kind}"] = dl * DIFFUSION_UNIT
             result[f"diffusion_T_times_N_{kind}"] = dt * DIFFUSION_UNIT
+            result[f"skewness_L_times_N2_{kind}"] = q * SKEWNESS_UNIT
             if field == 0.0:
-                result[f"drift_velocity_{kind}"] = np.zeros(len(rows))
+                for name in ("drift_velocity", "skewness_L_times_N2"):
+                    result[f"{name}_{kind}"] = np.zeros(len(rows))
                 continue
             mobility = w * SPEED_1_EV / field
             result[f"drift_velocity_{kind}"] = w * SPEED_1_EV
             result[f"mobility_times_N_{kind}"] = mobility
             result[f"characteristic_energy_T_{kind}"] = dt * DIFFUSION_UNIT / mobility
             result[f"characteristic_energy_L_{kind}"] = dl * DIFFUSION_UNIT / mobility
+        return result
+
+    def _energy_transport(self, rows, lag, point, energy, flux) -> dict[str, np.ndarray]:
+        """Mobility and diffusion of the energy flux; <v_z e> from the distribution, as f1."""
+        field = self.plan.field.E_over_N_Td * TOWNSEND
+        drift, diffusion_l, diffusion_t, _ = flux
+        edges = lab_edges_eV()
+        lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)
+        moment = serial_sum(lab[:, :, 1] * (0.5 * (edges[:-1] + edges[1:]))) / serial_sum(lab[:, :, 0])
+        result = {}
+        share = np.ones(len(rows))
+        if field > 0.0:
+            share = moment / (energy * drift)
+            result["energy_flux_mobility_times_N"] = moment / energy * SPEED_1_EV / field
+        along, across = energy_diffusion(lag, point, share, diffusion_l, diffusion_t)
+        result["energy_flux_diffusion_L_times_N"] = along * DIFFUSION_UNIT
+        result["energy_flux_diffusion_T_times_N"] = across * DIFFUSION_UNIT
         return result
 
     @staticmethod
@@ -210,10 +235,12 @@ class Reducer:
             kind = "gain" if curve.superelastic else "loss"
             result[f"{kind}_fraction:{gas.name}/{curve.process.id}"] = fraction
             spent = spent - fraction if curve.superelastic else spent + fraction
+        lost = spent
         if self._population_changes():
             fraction = known["net_frequency_over_N"] * known["mean_energy"] / heating
             result["loss_fraction:population_change"] = fraction
             spent = spent + fraction
+        result["energy_loss_coefficient"] = heating * lost
         result["energy_balance_residual"] = 1.0 - spent
         return result
 
