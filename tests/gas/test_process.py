@@ -143,7 +143,7 @@ IMPOSSIBLE = [
     (lambda: process(degeneracy_upper=2), "degeneracy_upper is given alone. Give degeneracy_lower and"),
     (lambda: process("attachment", vibrational=True), "vibrational is given for an attachment process. Remove it"),
     (lambda: process(relative_uncertainty=math.inf), "relative_uncertainty = inf is not possible"),
-    (lambda: process(scattering="forward"), 'scattering = "forward" is not available: only "isotropic". Remove'),
+    (lambda: process(scattering="forward"), "scattering = 'forward' is not an angular law. Use"),
     (lambda: Process("a/b", "elastic", 0.0, Ramp(0.0, 1.0)), "id = 'a/b' cannot be a name. Use letters"),
 ]
 

@@ -162,6 +162,44 @@ def test_any_set_comes_back_bit_for_bit(gas, tmp_path):
     assert bits(load_set(path)) == bits(gas)
 
 
+@pytest.mark.parametrize(
+    ("elastic", "ionization"),
+    [
+        ({"screened": -0.25, "convert": True}, {"sharing": {"width_eV": 15.8}, "ejecta": "binary"}),
+        (
+            {"screened": {"energy_eV": [0.1, 1, 30], "parameter": [0, 0.1, 0.9]}, "convert": True},
+            {"sharing": {"ejected_eV": [0, 5, 50], "density": [1, 0.5, 0]}, "scattering": "forward"},
+        ),
+        (
+            {"momentum_transfer_ratio": {"energy_eV": [0.1, 30], "ratio": [1.05, 0.3]}, "convert": True},
+            {"scattering": {"screened": 0.9}},
+        ),
+        (
+            {"angles_deg": [0, 12.5, 180], "energy_eV": [0.1, 7], "shape": [[1, 1, 1], [3, 1, 0.1]], "convert": True},
+            {"scattering": "isotropic"},
+        ),
+    ],
+)
+def test_angular_laws_and_sharing_come_back(tmp_path, written, content, elastic, ionization):
+    for process in content["process"]:
+        if process["kind"] == "elastic":
+            process["scattering"] = elastic
+        if process["kind"] == "ionization":
+            process |= ionization
+    gas = load_set(written(content))
+    path = tmp_path / "again.toml"
+    path.write_text(set_text(gas), encoding="utf-8", newline="\n")
+    again = load_set(path)
+    assert again.canonical() == gas.canonical()
+    canonical = {process["kind"]: process for process in gas.canonical()["processes"]}
+    assert canonical["elastic"]["scattering"]["convert"] is True
+    assert canonical["ionization"]["sharing"][0] == (
+        "uniform"
+        if "sharing" not in ionization
+        else {"width_eV": "width", "ejected_eV": "table"}[next(iter(ionization["sharing"]))]
+    )
+
+
 def test_an_existing_file_is_not_overwritten(written, content):
     path = written(content)
     before = path.read_bytes()
@@ -285,7 +323,7 @@ FAULTS = [
     ),
     (
         change(*ION, "sharing", "even"),
-        '{file}, process ion, sharing = "even" is not "uniform", "equal" or { fraction = 0.3 }',
+        '{file}, process ion, sharing = "even" is not "uniform", "equal", { fraction = 0.3 } or { width_eV = 13 }',
     ),
     (
         change(*ION, "sharing", {"fraction": 2}),
@@ -294,8 +332,38 @@ FAULTS = [
     (change(*V1, "sharing", "equal"), "{file}, process v1, sharing is given for an excitation process. Remove it"),
     (change(*V1, "third_body", "self"), "{file}, process v1, third_body is given for an excitation process. Remove it"),
     (
-        change(*V1, "scattering", "forward"),
-        '{file}, process v1, scattering = "forward" is not available, only "isotropic". W',
+        change(*V1, "scattering", "sideways"),
+        '{file}, process v1, scattering = "sideways" is not "isotropic", "forward" or { screened = 0.5 }. W',
+    ),
+    (
+        change(*V1, "scattering", {"screened": 1.0}),
+        "{file}, process v1, scattering: screened: parameter, row 1: 1 is not between -1 and 1. Correct it",
+    ),
+    (
+        change(*V1, "scattering", {"screened": 0.5, "shape": [[1.0, 2.0]]}),
+        "{file}, process v1, scattering: screened, shape is given. Give either screened, or momentum_transfer_ratio",
+    ),
+    (
+        change(*V1, "scattering", {"angles_deg": [0, 90], "energy_eV": [1], "shape": [[1.0, 2.0]]}),
+        "{file}, process v1, scattering: angles_deg does not rise from 0 to 180. Give",
+    ),
+    (
+        change(*V1, "scattering", {"angles_deg": [0, 90, 180], "energy_eV": [1], "shape": [[1.0, 2.0]]}),
+        "{file}, process v1, scattering: shape has 1 x 2 numbers for 1 energies and 3 angles. Give a row",
+    ),
+    (
+        change(*V1, "scattering", {"momentum_transfer_ratio": {"energy_eV": [1, 2], "ratio": [0.5, 2.5]}}),
+        "{file}, process v1, scattering: momentum_transfer_ratio: ratio, row 2: 2.5 is not between 0.01 and 1.99",
+    ),
+    (change(*V1, "scattering", {"screened": 0.5, "convert": True}), "{file}, process v1, scattering: convert is given"),
+    (change(*V1, "ejecta", "binary"), "{file}, process v1, ejecta is given for an excitation process. Remove it"),
+    (
+        change(*ION, "sharing", {"width_eV": -1}),
+        "{file}, process ion, sharing: width_eV = -1 is not possible. Give 0.001 to 1e6 eV",
+    ),
+    (
+        change(*ION, "sharing", {"ejected_eV": [1, 2], "density": [1, 1]}),
+        "{file}, process ion, sharing: ejected_eV does not rise from 0. Give",
     ),
     (
         change(*V1, "lower", "v2"),

@@ -40,6 +40,7 @@ from swarmgauge.swarm.curves import process_curves, process_threshold
 from swarmgauge.swarm.tables import build_tables
 
 LANES = 64
+NONE = np.zeros(1)
 
 
 def seeded_rows(seed, lanes=LANES):
@@ -70,8 +71,11 @@ def test_two_body_scattering_conserves_momentum_and_energy(mass_ratio):
         np.testing.assert_allclose((after - neutral) / g, n, rtol=0, atol=1e-10)  # n is the new relative direction
 
 
-def event(tables, velocity, neutral, seed, direction=(0.6, 0.0, 0.8)):
-    """Workspace, its rows and the number alive after an event of the only process by the electron in lane 0."""
+def event(tables, velocity, neutral, seed, direction=(0.6, 0.0, 0.8), angular=False):
+    """Workspace, its rows and the number alive after an event of the only process by the electron in lane 0.
+
+    direction : after the collision; with angular laws, what stands in its place (see `lanes`).
+    """
     lags = 2
     work = new_workspace(LANES, lags, 1, 1)
     work.rows[:] = seeded_rows(seed)
@@ -86,7 +90,7 @@ def event(tables, velocity, neutral, seed, direction=(0.6, 0.0, 0.8)):
     low, high = tables.process.reshape(SPEED_CELLS, 2)[cell]
     view[REMAINDER, 0] = 0.5 * (low + fraction * (high - low))
     work.rare[0] = 0
-    alive = collide(1, 1, tables, work.history, work, 4.0, True, LANES, lags)
+    alive = collide(1, 1, tables, work.history, work, 4.0, True, LANES, lags, angular)
     assert work.events.tolist() == [1, 0]
     return work, view, alive
 
@@ -163,10 +167,10 @@ def test_ejected_electrons_leave_isotropically_with_any_part_of_the_energy(seed)
 
 
 @njit
-def many_shares(law, fraction, rows, count, lanes):
+def many_shares(law, fraction, rows, count, lanes, available=2.0, ejected=NONE, edges=NONE):
     result = np.empty(count)
     for i in range(count):
-        result[i] = shared_energy(law, fraction, 2.0, rows, 0, lanes)
+        result[i] = shared_energy(law, fraction, available, ejected, 0, edges, rows, 0, lanes)
     return result
 
 

@@ -30,7 +30,7 @@ def first_collisions(tables, field, rows, lanes, gases, thermal, most_steps, pat
     left = lanes
     for _ in range(most_steps):
         before = rows[LEFT * lanes : (LEFT + 1) * lanes].copy()
-        fly(lanes, tables, field, rows, lanes, gases, thermal)
+        fly(lanes, tables, field, rows, lanes, gases, thermal, False)
         for lane in range(lanes):
             if not waiting[lane]:
                 continue
@@ -154,7 +154,7 @@ def test_integrals_of_a_flight(seed):
 
 @njit
 def one_flight(tables, field, rows, lanes):
-    fly(lanes, tables, field, rows, lanes, 1, False)
+    fly(lanes, tables, field, rows, lanes, 1, False, False)
 
 
 @njit
@@ -166,7 +166,7 @@ def collision_counts(tables, speed, rows, lanes, gases, repeats, outcomes, total
             store(rows, lane + (VX + 1) * lanes, 0.0)
             store(rows, lane + VZ * lanes, 0.0)
             store(rows, lane + LEFT * lanes, 1e9)
-        fly(lanes, tables, 0.0, rows, lanes, gases, True)
+        fly(lanes, tables, 0.0, rows, lanes, gases, True, False)
         for lane in range(lanes):
             outcomes[load_int(rows, lane + OUTCOME * lanes)] += 1
     total_time[0] = rows[SUM_TIME * lanes : (SUM_TIME + 1) * lanes].sum()

@@ -10,6 +10,7 @@ from swarmgauge.swarm.targets import Target
 
 from .campaign import Outcome
 from .console import field_text, missed_target, table, wrapped
+from .laws import special_laws
 from .runfile import RunFile
 from .trust import outside
 
@@ -18,7 +19,7 @@ MOST_WARNINGS = 12
 
 
 def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -> Iterator[str]:
-    """The folder, which targets hold, the limits, and which third bodies act."""
+    """The folder, which targets hold, the limits, which third bodies act, and which laws are not the default ones."""
     targets = ", ".join(f"{target.pattern} {target}{_reach(target)}" for target in run_file.targets)
     yield from wrapped(f"{folder}: standard errors asked for: {targets}")
     limit = max_minutes or run_file.max_minutes
@@ -28,7 +29,9 @@ def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -
         f"{run_file.title or run_file.name}: {count} point{'s' if count > 1 else ''}, seed {run_file.seed}, "
         f"at most {run_file.max_minutes_per_point:g} min a point{whole}"
     )
-    for line in dict.fromkeys(line for point in run_file.points for line in _third_bodies(point.mixture)):
+    mixtures = [point.mixture for point in run_file.points]
+    lines = [line for mixture in mixtures for line in (*_third_bodies(mixture), *special_laws(mixture))]
+    for line in dict.fromkeys(lines):
         yield from wrapped(line)
 
 

@@ -15,6 +15,7 @@ from swarmgauge.gas import Gas, Mixture
 from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.targets import DEFAULT_ACCURACY
 
+from .laws import special_laws
 from .results import checksum
 from .runfile import RunFile
 
@@ -51,6 +52,7 @@ def provenance(
         "run_file": {"name": run_file.path.name, "sha256": checksum(run_file.text)},
         "parameters": _parameters(run_file),
         "sets": {gas.name: _set_hash(gas) for gas in _gases(run_file)},
+        "laws": list(dict.fromkeys(line for mixture in _mixtures(run_file) for line in special_laws(mixture))),
         "computer": {"cpu": cpu_model(), "system": f"{platform.system()} {platform.machine()}"},
         "flags": {name: os.environ[name] for name in _FLAGS if name in os.environ},
         "wall_seconds": round(wall_seconds, 3),

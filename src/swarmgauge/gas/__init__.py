@@ -11,20 +11,27 @@ if TYPE_CHECKING:
     from .laws import PowerLaw, Ramp, Table
     from .library import load_named, load_named_or_path, shipped_sets
     from .mixture import Mixture
-    from .process import Process, Sharing
+    from .process import Process
+    from .scattering import AngleTable, Forward, Isotropic, Screened, ScreenedToRatio
     from .schema import set_file_schema
     from .setfile import load_set
+    from .sharing import Sharing
     from .writer import set_text, write_set
 
 __all__ = [
+    "AngleTable",
+    "Forward",
     "Gas",
     "InputError",
+    "Isotropic",
     "Mixture",
     "MixtureError",
     "PowerLaw",
     "Process",
     "ProcessError",
     "Ramp",
+    "Screened",
+    "ScreenedToRatio",
     "SetFileError",
     "Sharing",
     "Table",
@@ -39,12 +46,17 @@ __all__ = [
     "write_set",
 ]
 _HOME = {
+    "AngleTable": "scattering",
+    "Forward": "scattering",
     "Gas": "gas",
+    "Isotropic": "scattering",
     "Mixture": "mixture",
     "PowerLaw": "laws",
     "Process": "process",
     "Ramp": "laws",
-    "Sharing": "process",
+    "Screened": "scattering",
+    "ScreenedToRatio": "scattering",
+    "Sharing": "sharing",
     "Table": "laws",
     "load_named": "library",
     "load_named_or_path": "library",

@@ -8,6 +8,7 @@ from .constants import ATOMIC_MASS, E_MASS
 from .errors import ProcessError, suggestion
 from .levels import check_ladder
 from .process import Process, check_name
+from .scattering import Isotropic
 from .total import Clipping, subtract_from_total
 
 ElasticIs = Literal["momentum_transfer", "total_momentum_transfer", "integral"]
@@ -48,6 +49,7 @@ class Gas:
         _check_top(self)
         published = tuple(sorted(self.published, key=lambda process: process.threshold_eV))
         _check_processes(published)
+        _check_angles(published, self.elastic_is)
         object.__setattr__(self, "published", published)
         processes, clipped = _acting_elastic(published, self.elastic_is)
         object.__setattr__(self, "processes", processes)
@@ -127,6 +129,31 @@ def _check_processes(processes: tuple[Process, ...]) -> None:
     check_ladder(processes)
 
 
+def _check_angles(processes: tuple[Process, ...], elastic_is: ElasticIs) -> None:
+    """An angular law and a momentum transfer cross section must not both count the same angles."""
+    for process in processes:
+        if isinstance(process.scattering, Isotropic) or process.passive:
+            continue
+        if elastic_is == "total_momentum_transfer":
+            raise ProcessError(
+                f'process {process.id}: scattering is not isotropic, but elastic_is = "total_momentum_transfer" stands '
+                "for isotropic scattering of all processes. Remove the law, or give cross sections of their own."
+            )
+        if process.kind != "elastic":
+            continue
+        if elastic_is == "momentum_transfer" and not process.scattering.convert:
+            raise ProcessError(
+                f'process {process.id}: scattering is not isotropic, but elastic_is = "momentum_transfer" counts the '
+                'angles already. Give the integral cross section and elastic_is = "integral", or add convert = true to '
+                "the law: the cross section is then divided by 1 - <cos chi>."
+            )
+        if elastic_is == "integral" and process.scattering.convert:
+            raise ProcessError(
+                f"process {process.id}: scattering: convert is for a momentum transfer cross section, and elastic_is = "
+                '"integral". Remove convert.'
+            )
+
+
 def _acting_elastic(
     published: tuple[Process, ...], elastic_is: ElasticIs
 ) -> tuple[tuple[Process, ...], Clipping | None]:
@@ -141,10 +168,12 @@ def _acting_elastic(
 
 def _warnings(gas: Gas) -> tuple[str, ...]:
     warnings = []
-    if gas.elastic_is == "integral":
+    elastic = [p for p in gas.processes if p.kind == "elastic" and not p.passive]
+    if gas.elastic_is == "integral" and any(isinstance(p.scattering, Isotropic) for p in elastic):
         warnings.append(
             f"{gas.name}: its elastic cross section is the integral one, but scattering is isotropic here, so momentum "
-            "transfer is too large where scattering is forward. Use a momentum transfer set for drift velocity."
+            "transfer is too large where scattering is forward. Give it an angular law (scattering), or use a momentum "
+            "transfer set."
         )
     if gas.clipped is not None:
         warnings.append(f"{gas.name}: {gas.clipped}.")

@@ -1,8 +1,10 @@
-"""Powers, exponentials and logarithms with the same bits on every processor.
+"""Powers, exponentials, logarithms and cosines with the same bits on every processor.
 
 numpy's and libm's pow, exp and log differ in the last bit between vector widths and versions. Here only operations
 act that IEEE 754 rounds exactly (+ - * / sqrt) or that are exact (splitting off and adding binary exponents).
 """
+
+import math
 
 import numpy as np
 
@@ -12,6 +14,9 @@ _LN_2 = 0.6931471805599453
 _LN_2_HIGH, _LN_2_LOW = 0.693147180369123816490, 1.90821492927058770002e-10
 # 2 atanh(s) = 2 s (1 + z/3 + z^2/5 + ...), z = s^2 < 0.0295: what is left out is below 1e-18.
 _ATANH = tuple(1.0 / (2 * k + 1) for k in range(12))
+_PI = 3.141592653589793
+# sin(y) / y = 1 - y^2/6 + ..., y < 1.571: what is left out is below 1e-18.
+_SINE = tuple((-1) ** k / math.factorial(2 * k + 1) for k in range(13))
 # exp(y) = 1 + y + y^2/2 + ..., |y| < 0.347: what is left out is below 1e-18.
 _EXP = (
     1.0,
@@ -95,3 +100,10 @@ def strict_log(x: np.ndarray) -> np.ndarray:
     """
     two, ln_mantissa = _split_log(np.asarray(x, dtype=np.float64))
     return two * _LN_2_HIGH + (two * _LN_2_LOW + ln_mantissa)
+
+
+def strict_cosine(degrees: np.ndarray) -> np.ndarray:
+    """cos of 0 to 180 degrees, ndarray of any shape, with the same bits on every processor; error below 1e-15."""
+    half = np.asarray(degrees, dtype=np.float64) * (_PI / 360.0)
+    sine = half * _polynomial(half * half, _SINE)
+    return 1.0 - 2.0 * sine * sine

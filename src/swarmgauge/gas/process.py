@@ -8,32 +8,13 @@ import numpy as np
 
 from .errors import ProcessError, suggestion
 from .laws import Law, Table
+from .scattering import Forward, Isotropic, Scattering
+from .sharing import Sharing
 
 Kind = Literal["elastic", "excitation", "ionization", "attachment"]
+EJECTA = ("isotropic", "binary")
 KINDS = ("elastic", "excitation", "ionization", "attachment")
 _NAME_SIGNS = frozenset("abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ0123456789._+-=()'")
-
-
-@dataclass(frozen=True)
-class Sharing:
-    """How the two electrons after an ionization share what is left of the energy.
-
-    kind : "uniform" (the ejected electron takes any part with equal probability), "equal" (half each) or "fixed" (the
-    ejected electron takes the `fraction`, 0 to 1, of it).
-    """
-
-    kind: Literal["uniform", "equal", "fixed"] = "uniform"
-    fraction: float = 0.5
-
-    def __post_init__(self) -> None:
-        object.__setattr__(self, "fraction", float(self.fraction))
-        if self.kind not in ("uniform", "equal", "fixed"):
-            raise ProcessError(f'sharing "{self.kind}" is unknown. Use "uniform", "equal" or {{ fraction = 0.3 }}.')
-        if not 0.0 <= self.fraction <= 1.0:
-            raise ProcessError(
-                f"sharing: fraction = {self.fraction:g} is outside 0 to 1. "
-                "Give the part of the energy left that the ejected electron takes."
-            )
 
 
 @dataclass(frozen=True, eq=False)
@@ -42,11 +23,13 @@ class Process:
 
     id : name within its set. kind : "elastic", "excitation", "ionization" or "attachment". threshold_eV : energy loss;
     for attachment only the onset, which neither cuts nor costs energy. law : the cross section against energy.
-    sharing : of an ionization. degeneracy_lower, degeneracy_upper : statistical weights; lower : id of the lower level,
+    sharing : of an ionization; ejecta : directions of its two electrons, "isotropic" or "binary" (as two free
+    electrons would part). degeneracy_lower, degeneracy_upper : statistical weights; lower : id of the lower level,
     None for the ground state; vibrational : whether the upper level follows a vibrational temperature. third_body :
     None for two bodies; else the cross section is in m5, per m-3 of the third body: "self", "any", or formula to
     efficiency. passive : averaged over the swarm, without acting on it.
-    relative_uncertainty : one standard deviation, None where not stated. scattering : angular law.
+    relative_uncertainty : one standard deviation, None where not stated. scattering : angular law; where it converts,
+    the law of the cross section is the momentum transfer.
     Raises ProcessError where these contradict each other.
     """
 
@@ -57,7 +40,8 @@ class Process:
     label: str = ""
     source: str = ""
     sharing: Sharing = field(default_factory=Sharing)
-    scattering: str = "isotropic"
+    scattering: Scattering = field(default_factory=Isotropic)
+    ejecta: str = "isotropic"
     degeneracy_lower: float | None = None
     degeneracy_upper: float | None = None
     lower: str | None = None
@@ -87,7 +71,8 @@ class Process:
         """
         energy = np.asarray(energy_eV, dtype=np.float64)
         if self.kind == "elastic":
-            return self.law.value(np.maximum(energy, self.law.start_eV))
+            values = self.law.value(np.maximum(energy, self.law.start_eV))
+            return values / (1.0 - self.scattering.mean_cosine(energy)) if self.scattering.convert else values
         values = self.law.value(energy)
         return np.where(energy >= self.threshold_eV, values, 0.0) if self.cut else values
 
@@ -113,8 +98,9 @@ class Process:
 
     @property
     def breakpoints_eV(self) -> np.ndarray:
-        """Threshold and points of the table, rising, eV: where the cross section may bend or jump."""
-        return np.unique(np.append(self.law.breakpoints_eV, self.threshold_eV))
+        """Threshold and points of the tables, rising, eV: where the cross section may bend or jump."""
+        turns = self.scattering.breakpoints_eV if self.scattering.convert else np.empty(0)
+        return np.unique(np.concatenate([self.law.breakpoints_eV, turns, [self.threshold_eV]]))
 
     @property
     def end_eV(self) -> float:
@@ -129,8 +115,9 @@ class Process:
             "threshold_eV": self.threshold_eV,
             "law": type(self.law).__name__,
             **{f.name: _plain(getattr(self.law, f.name)) for f in fields(self.law)},
-            "sharing": [self.sharing.kind, self.sharing.fraction] if self.kind == "ionization" else None,
-            "scattering": self.scattering,
+            "sharing": self.sharing.canonical() if self.kind == "ionization" else None,
+            "scattering": self.scattering.canonical(),
+            **({} if self.ejecta == "isotropic" else {"ejecta": self.ejecta}),
             "degeneracies": [self.degeneracy_lower, self.degeneracy_upper],
             "lower": self.lower,
             "third_body": self.third_body,
@@ -174,8 +161,7 @@ def _check_options(process: Process) -> None:
         raise ProcessError(
             f"third_body is given for an {process.kind} process. Remove it; only attachment can need one."
         )
-    if process.scattering != "isotropic":
-        raise ProcessError(f'scattering = "{process.scattering}" is not available: only "isotropic". Remove the key.')
+    _check_scattering(process)
     _check_third_body(process.third_body)
     for name in ("degeneracy_lower", "degeneracy_upper", "lower", "vibrational"):
         if getattr(process, name) not in (None, False) and process.kind != "excitation":
@@ -189,6 +175,33 @@ def _check_options(process: Process) -> None:
     if (process.degeneracy_lower is None) is not (process.degeneracy_upper is None):
         given = "degeneracy_lower" if process.degeneracy_upper is None else "degeneracy_upper"
         raise ProcessError(f"{given} is given alone. Give degeneracy_lower and degeneracy_upper, or neither.")
+
+
+def _check_scattering(process: Process) -> None:
+    law = process.scattering
+    if not isinstance(law, Scattering):
+        raise ProcessError(
+            f"scattering = {law!r} is not an angular law. Use Isotropic(), Forward(), Screened and so on."
+        )
+    if process.ejecta not in EJECTA:
+        raise ProcessError(f'ejecta = "{process.ejecta}" is unknown. Use "isotropic" or "binary".')
+    if process.ejecta != "isotropic" and process.kind != "ionization":
+        raise ProcessError(
+            f"ejecta is given for an {process.kind} process. Remove it; only ionization ejects electrons."
+        )
+    if isinstance(law, Isotropic):
+        return
+    if process.kind == "attachment":
+        raise ProcessError("scattering is given for an attachment process. Remove it; no electron is left.")
+    if isinstance(law, Forward) and process.kind == "elastic":
+        raise ProcessError('scattering = "forward" for an elastic process: it would do nothing. Give another law.')
+    if process.ejecta == "binary":
+        raise ProcessError('scattering is given beside ejecta = "binary", which fixes both directions. Remove one.')
+    if law.convert and process.kind != "elastic":
+        raise ProcessError(
+            f"scattering: convert is given for an {process.kind} process. Remove it; only an elastic momentum transfer "
+            "can be converted."
+        )
 
 
 def _check_third_body(body: Any) -> None:

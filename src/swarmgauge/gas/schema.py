@@ -41,11 +41,74 @@ class FractionEntry(_Entry):
     fraction: Number = Field(description="0 to 1")
 
 
+class WidthEntry(_Entry):
+    """The ejected electron has energies in proportion to 1 / (1 + (energy / width)^2.1), up to half of what is left."""
+
+    width_eV: Number = Field(description="published width of the gas, eV")
+
+
+class EjectedEntry(_Entry):
+    """The ejected electron has energies in proportion to a table, up to half of what is left."""
+
+    ejected_eV: list[Number] = Field(description="energies from 0, rising, eV")
+    density: list[Number] = Field(description="number per energy, any unit; linear between points")
+
+
+class ParameterEntry(_Entry):
+    """Parameter xi of the screened Coulomb form against energy."""
+
+    energy_eV: list[Number] = Field(description="energies before the collision, rising, eV")
+    parameter: list[Number] = Field(description="xi, between -1 and 1; linear in energy")
+
+
+class RatioEntry(_Entry):
+    """Momentum transfer over integral cross section against energy."""
+
+    energy_eV: list[Number] = Field(description="energies before the collision, rising, eV")
+    ratio: list[Number] = Field(description="1 - <cos chi>, 0.01 to 1.99; linear in energy")
+
+
+ScreenedEntry = Annotated[
+    Annotated[Number, Tag("word")] | Annotated[ParameterEntry, Tag("table")], Discriminator(_form)
+]
+
+
+class AngularEntry(_Entry):
+    """An angular law: give screened, or momentum_transfer_ratio, or angles_deg with energy_eV and shape."""
+
+    screened: ScreenedEntry | None = Field(None, description="xi of the screened Coulomb form")
+    momentum_transfer_ratio: RatioEntry | None = Field(
+        None, description="screened Coulomb form with xi found so that this ratio is met"
+    )
+    angles_deg: list[Number] | None = Field(None, description="angles of a table, from 0 to 180")
+    energy_eV: list[Number] | None = Field(None, description="energies of a table, rising, eV")
+    shape: list[list[Number]] | None = Field(
+        None, description="differential cross sections, a row for each energy; any unit, each row is normalised"
+    )
+    convert: bool = Field(False, description="divide an elastic momentum transfer cross section by 1 - <cos chi>")
+
+
 Beyond = Annotated[
     Annotated[Literal["zero", "hold"], Tag("word")] | Annotated[PowerEntry, Tag("table")], Discriminator(_form)
 ]
+
+
+def _sharing_form(value: Any) -> str:
+    if not isinstance(value, dict):
+        return "word"
+    return "width" if "width_eV" in value else "ejected" if {"ejected_eV", "density"} & set(value) else "table"
+
+
 SharingEntry = Annotated[
-    Annotated[Literal["uniform", "equal"], Tag("word")] | Annotated[FractionEntry, Tag("table")], Discriminator(_form)
+    Annotated[Literal["uniform", "equal"], Tag("word")]
+    | Annotated[FractionEntry, Tag("table")]
+    | Annotated[WidthEntry, Tag("width")]
+    | Annotated[EjectedEntry, Tag("ejected")],
+    Discriminator(_sharing_form),
+]
+ScatteringEntry = Annotated[
+    Annotated[Literal["isotropic", "forward"], Tag("word")] | Annotated[AngularEntry, Tag("table")],
+    Discriminator(_form),
 ]
 ThirdBody = Annotated[
     Annotated[Literal["self", "any"], Tag("word")] | Annotated[dict[str, Number], Tag("table")], Discriminator(_form)
@@ -67,9 +130,16 @@ class ProcessEntry(_Entry):
     )
     power_law: PowerLawEntry | None = Field(None, description="formula in place of a table")
     ramp: RampEntry | None = Field(None, description="formula in place of a table")
-    scattering: Literal["isotropic"] | None = Field(None, description="angular law; only isotropic is available")
+    scattering: ScatteringEntry | None = Field(
+        None, description="angular law; default isotropic", examples=["forward", {"screened": 0.5}]
+    )
     sharing: SharingEntry | None = Field(
-        None, description="energy sharing of an ionization; default uniform", examples=["equal", {"fraction": 0.3}]
+        None,
+        description="energy sharing of an ionization; default uniform",
+        examples=["equal", {"fraction": 0.3}, {"width_eV": 13}],
+    )
+    ejecta: Literal["isotropic", "binary"] | None = Field(
+        None, description="directions of the two electrons after an ionization; default isotropic"
     )
     degeneracy_lower: Number | None = Field(None, description="statistical weight of the lower level")
     degeneracy_upper: Number | None = Field(None, description="statistical weight of the upper level")

@@ -13,8 +13,19 @@ from .errors import InputError, SetFileError, printable
 from .faults import form_faults, joined
 from .gas import Gas
 from .laws import Law, PowerLaw, Ramp, Table
-from .process import Process, Sharing
-from .schema import FractionEntry, PowerEntry, ProcessEntry, SetEntry
+from .process import Process
+from .scattering import AngleTable, Forward, Isotropic, Scattering, Screened, ScreenedToRatio
+from .schema import (
+    AngularEntry,
+    EjectedEntry,
+    FractionEntry,
+    ParameterEntry,
+    PowerEntry,
+    ProcessEntry,
+    SetEntry,
+    WidthEntry,
+)
+from .sharing import Sharing
 
 LARGEST_FILE_BYTES = 16_000_000
 
@@ -116,7 +127,6 @@ def _pair(values: list[float] | None) -> tuple[float, float] | None:
 
 
 def _process(entry: ProcessEntry) -> Process:
-    sharing = entry.sharing
     return Process(
         id=entry.id,
         kind=entry.kind,
@@ -124,10 +134,9 @@ def _process(entry: ProcessEntry) -> Process:
         law=_law(entry),
         label=entry.label,
         source=entry.source,
-        sharing=Sharing("fixed", sharing.fraction)
-        if isinstance(sharing, FractionEntry)
-        else Sharing(sharing or "uniform"),
-        scattering=entry.scattering or "isotropic",
+        sharing=_sharing(entry),
+        scattering=_scattering(entry.scattering),
+        ejecta=entry.ejecta or "isotropic",
         degeneracy_lower=entry.degeneracy_lower,
         degeneracy_upper=entry.degeneracy_upper,
         lower=entry.lower,
@@ -136,6 +145,39 @@ def _process(entry: ProcessEntry) -> Process:
         passive=entry.passive,
         relative_uncertainty=entry.relative_uncertainty,
     )
+
+
+def _sharing(entry: ProcessEntry) -> Sharing:
+    sharing = entry.sharing
+    if isinstance(sharing, FractionEntry):
+        return Sharing("fixed", fraction=sharing.fraction)
+    if isinstance(sharing, WidthEntry):
+        return Sharing("width", width_eV=sharing.width_eV)
+    if isinstance(sharing, EjectedEntry):
+        return Sharing("table", ejected_eV=np.array(sharing.ejected_eV), density=np.array(sharing.density))
+    return Sharing(sharing or "uniform")
+
+
+def _scattering(entry: str | AngularEntry | None) -> Scattering:
+    if not isinstance(entry, AngularEntry):
+        return Forward() if entry == "forward" else Isotropic()
+    table = [name for name in ("angles_deg", "energy_eV", "shape") if getattr(entry, name) is not None]
+    ways = [name for name in ("screened", "momentum_transfer_ratio") if getattr(entry, name) is not None]
+    if table:
+        ways.append(" with ".join(table))
+    if len(ways) != 1 or len(table) not in (0, 3):
+        raise SetFileError(
+            f"scattering: {', '.join(ways) or 'no law'} is given. Give either screened, or momentum_transfer_ratio, or "
+            "angles_deg with energy_eV and shape."
+        )
+    if entry.momentum_transfer_ratio is not None:
+        ratio = entry.momentum_transfer_ratio
+        return ScreenedToRatio(np.array(ratio.energy_eV), np.array(ratio.ratio), entry.convert)
+    if isinstance(entry.screened, ParameterEntry):
+        return Screened(np.array(entry.screened.energy_eV), np.array(entry.screened.parameter), entry.convert)
+    if entry.screened is not None:
+        return Screened(np.zeros(1), np.array([entry.screened]), entry.convert)
+    return AngleTable(entry.angles_deg, entry.energy_eV, entry.shape, entry.convert)  # type: ignore[arg-type]
 
 
 def _law(entry: ProcessEntry) -> Law:

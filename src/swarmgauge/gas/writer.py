@@ -1,7 +1,7 @@
 """From a Gas to the text of a set file, which reads back to the same bits."""
 
 import os
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from pathlib import Path
 from typing import Any
 
@@ -11,7 +11,9 @@ import tomli_w
 from .errors import SetFileError
 from .gas import Gas
 from .laws import PowerLaw, Ramp, Table
-from .process import Process, Sharing
+from .process import Process
+from .scattering import AngleTable, Isotropic, Scattering, Screened, ScreenedToRatio
+from .sharing import Sharing
 
 _NUMBERS_PER_LINE = 8
 
@@ -57,8 +59,9 @@ def _entries(process: Process) -> dict[str, Any]:
         "label": process.label,
         "source": process.source,
         **_law(process),
-        "scattering": None if process.scattering == "isotropic" else process.scattering,
+        "scattering": _scattering(process.scattering),
         "sharing": _sharing(process.sharing),
+        "ejecta": None if process.ejecta == "isotropic" else process.ejecta,
         "degeneracy_lower": process.degeneracy_lower,
         "degeneracy_upper": process.degeneracy_upper,
         "lower": process.lower,
@@ -89,7 +92,30 @@ def _beyond(law: Table) -> str:
 def _sharing(sharing: Sharing) -> str | None:
     if sharing.kind == "fixed":
         return _inline_table({"fraction": sharing.fraction})
+    if sharing.kind == "width":
+        return _inline_table({"width_eV": sharing.width_eV})
+    if sharing.kind == "table":
+        return _inline({"ejected_eV": _column(sharing.ejected_eV), "density": _column(sharing.density)})
     return None if sharing.kind == "uniform" else sharing.kind
+
+
+def _scattering(law: Scattering) -> str | None:
+    if isinstance(law, Isotropic):
+        return None
+    entries: dict[str, str] = {}
+    if isinstance(law, AngleTable):
+        rows = "".join(f"{_column(row)},\n" for row in law.shape)
+        entries = {"angles_deg": _column(law.angles_deg), "energy_eV": _column(law.energy_eV), "shape": f"[\n{rows}]"}
+    elif isinstance(law, ScreenedToRatio):
+        table = {"energy_eV": _column(law.energy_eV), "ratio": _column(law.ratio)}
+        entries = {"momentum_transfer_ratio": _inline(table)}
+    elif isinstance(law, Screened):
+        table = {"energy_eV": _column(law.energy_eV), "parameter": _column(law.parameter)}
+        constant = len(law.energy_eV) == 1 and law.energy_eV[0] == 0.0
+        entries = {"screened": _digits(law.parameter[0]) if constant else _inline(table)}
+    else:
+        return "forward"
+    return _inline(entries | ({"convert": "true"} if law.convert else {}))
 
 
 def _lines(entries: dict[str, Any]) -> str:
@@ -124,7 +150,11 @@ def _inline_list(values: Iterable[float]) -> _Raw:
 
 
 def _inline_table(values: dict[str, float]) -> _Raw:
-    pairs = (f"{_key(key)} = {_digits(value)}" for key, value in values.items())
+    return _inline({key: _digits(value) for key, value in values.items()})
+
+
+def _inline(texts: Mapping[str, str]) -> _Raw:
+    pairs = (f"{_key(key)} = {text}" for key, text in texts.items())
     return _Raw(f"{{ {', '.join(pairs)} }}")
 
 

@@ -144,15 +144,17 @@ def add_lane_sums(rows, lanes, series, window):
 
 
 @njit(inline="always")
-def step(active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, upkeep):
+def step(
+    active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, upkeep, angular
+):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
     rows = work.rows
-    fly(active, tables, field, rows, lanes, gases, thermal)
+    fly(active, tables, field, rows, lanes, gases, thermal, angular)
     if measuring:
         record(active, rows, work.histogram, work.lab_histogram, work.recoil, work.counts, lanes, thermal)
     born_from = alive
     rare = list_rare(active, rows, work.rare, lanes)
-    alive = collide(rare, alive, tables, history, work, window_time, measuring, lanes, lags)
+    alive = collide(rare, alive, tables, history, work, window_time, measuring, lanes, lags, angular)
     if upkeep == SPLIT and alive >= 0:
         alive = split_and_roulette(active, alive, tables, history, work, window_time, lanes, lags)
     ended = list_ended(active, rows, work.ended, lanes)
@@ -178,14 +180,16 @@ def end_window(alive, tables, history, extended, work, window_time, lanes, lags)
 
 
 @njit(inline="always")
-def windows(tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep):
+def windows(
+    tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep, angular
+):
     """Run as many windows as `series` has rows; returns the status.
 
     tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
     size : electrons at the start of every window, or their summed weight over `past_growth`; lags : windows in a
     displacement history; window_time and field in kernel units; measuring : whether histograms and counts are taken
-    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, upkeep :
-    compile-time constants.
+    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, upkeep,
+    angular : compile-time constants.
     After an odd number of windows the histories stand in `work.other_history`.
     """
     history, extended = work.history, work.other_history
@@ -213,6 +217,7 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
                 gases,
                 thermal,
                 upkeep,
+                angular,
             )
             steps += 1
             if alive < 0:
@@ -244,15 +249,28 @@ def windows(tables, work, series, size, lags, window_time, field, measuring, max
 
 
 @cache
-def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int):
-    """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last four."""
+def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int, angular: bool):
+    """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last five."""
     digest = kernel_digest()
 
     def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
         digest  # noqa: B018 - part of the cache key
         prefer_wide_vectors()
         return windows(
-            tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep
+            tables,
+            work,
+            series,
+            size,
+            lags,
+            window_time,
+            field,
+            measuring,
+            max_steps,
+            lanes,
+            gases,
+            thermal,
+            upkeep,
+            angular,
         )
 
     return compiled(run_windows)

@@ -11,6 +11,7 @@ from numba import njit
 from .bits import load, load_table, store, store_int
 from .functions import log, sincos_turn
 from .lanes import (
+    COS_AZIMUTH,
     CUT,
     ELASTIC,
     FRACTION,
@@ -27,10 +28,12 @@ from .lanes import (
     RARE,
     RECOIL,
     REMAINDER,
+    SIN_AZIMUTH,
     STREAM,
     SUM_ENERGY,
     SUM_TIME,
     SUM_Z,
+    UNIFORM,
     UX,
     UY,
     UZ,
@@ -43,8 +46,19 @@ from .lanes import (
     Y,
     Z,
 )
-from .lookup import ENERGY_CELLS, LAB_COARSER, SPEED_CELLS, energy_cell, speed_cell
+from .lookup import (
+    ANGLE_ROWS,
+    ENERGY_CELLS,
+    LAB_COARSER,
+    SPEED_CELLS,
+    angle_row,
+    drawn_cosine,
+    energy_cell,
+    speed_cell,
+)
 from .streams import advance_state, load_state, lower_one_to_two, one_to_two, store_state, upper_one_to_two
+
+LEAST_SPEED = 1e-150  # stands for rest: no direction is needed there
 
 
 @njit(forceinline=True)
@@ -54,6 +68,25 @@ def isotropic_direction(word):
     sine = math.sqrt(1.0 - cosine * cosine)
     sin_azimuth, cos_azimuth = sincos_turn(lower_one_to_two(word))
     return sine * cos_azimuth, sine * sin_azimuth, cosine
+
+
+@njit(forceinline=True)
+def deflected(ex, ey, ez, cosine, cos_azimuth, sin_azimuth):
+    """The unit vector e turned by an angle chi, given by its cosine, in the plane of an azimuth about e.
+
+    Two vectors across e without a branch: T. Duff et al., J. Comput. Graph. Tech. 6 (1), 1 (2017).
+    """
+    sine_squared = 1.0 - cosine * cosine
+    sine = math.sqrt(sine_squared if sine_squared > 0.0 else 0.0)
+    p, q = sine * cos_azimuth, sine * sin_azimuth
+    sign = 1.0 if ez >= 0.0 else -1.0
+    a = -1.0 / (sign + ez)
+    b = ex * ey * a
+    return (
+        cosine * ex + p * (1.0 + sign * ex * ex * a) + q * b,
+        cosine * ey + p * sign * b + q * (sign + ey * ey * a),
+        cosine * ez - p * sign * ex - q * ey,
+    )
 
 
 @njit(forceinline=True)
@@ -79,7 +112,7 @@ def normal_pair(word):
 
 
 @njit(inline="always")
-def fly(active, tables, field, rows, lanes, gases, thermal):
+def fly(active, tables, field, rows, lanes, gases, thermal, angular):
     """Fly every active lane to its next event and scatter it if that is an elastic collision.
 
     A flight ends at the first of: a candidate event at rate M (the majorant over the speeds reachable within the
@@ -89,7 +122,7 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
     real with probability nu(g)/M_gas, g the relative speed. Other than elastic events are left to the rare pass.
 
     active : number of lanes to move; field : acceleration along z; rows : (ROWS * lanes,), changed in place, see
-    `lanes`; lanes, gases, thermal : compile-time constants.
+    `lanes`; lanes, gases, thermal, angular : compile-time constants, the last whether any process has an angular law.
     """
     for i in range(active):
         # Random words: a fixed number for every flight, whatever comes of it.
@@ -157,6 +190,7 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
         lab_cell, fraction = speed_cell(speed)
         cell = lab_cell
         relative = speed
+        gx, gy, gz = vx, vy, vz
         if thermal:
             width = load_table(tables.neutral_speed, gas)
             ux = width * ux
@@ -170,6 +204,8 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
             store(rows, i + UX * lanes, ux)
             store(rows, i + UY * lanes, uy)
             store(rows, i + UZ * lanes, uz)
+
+        row, place = angle_row(cell, fraction)
 
         # Elastic, something else, or null?
         cell = cell + gas * SPEED_CELLS
@@ -195,16 +231,30 @@ def fly(active, tables, field, rows, lanes, gases, thermal):
         electron_part = load_table(tables.electron_part, gas)
         neutral_part = load_table(tables.neutral_part, gas)
         if thermal:
-            # Mean loss over isotropic scattering: 2 M/(m + M) V.g, V the velocity of the centre of mass.
+            # Mean loss: 2 M/(m + M) V.g (1 - <cos chi>), V the velocity of the centre of mass.
             projection = electron_part * (vx * gx + vy * gy + vz * gz) + neutral_part * (ux * gx + uy * gy + uz * gz)
             recoil = 2.0 * neutral_part * projection * elastic * weight * inverse_gas
+            if angular:
+                at = load_table(tables.elastic_law, gas) * ANGLE_ROWS + row
+                mean = load_table(tables.mean_cosine, at)
+                recoil *= 1.0 - (mean + place * (load_table(tables.mean_cosine, at + 1) - mean))
             store(rows, i + RECOIL * lanes, recoil if reached else 0.0)
 
         # Elastic collision.
-        nx, ny, nz = isotropic_direction(word_direction)
-        store(rows, i + NX * lanes, nx)
-        store(rows, i + NY * lanes, ny)
-        store(rows, i + NZ * lanes, nz)
+        if angular:
+            uniform = upper_one_to_two(word_direction)
+            sin_azimuth, cos_azimuth = sincos_turn(lower_one_to_two(word_direction))
+            store(rows, i + UNIFORM * lanes, uniform)
+            store(rows, i + COS_AZIMUTH * lanes, cos_azimuth)
+            store(rows, i + SIN_AZIMUTH * lanes, sin_azimuth)
+            cosine = drawn_cosine(tables.angles, load_table(tables.elastic_law, gas), row, place, uniform)
+            inverse = 1.0 / (relative if relative > LEAST_SPEED else LEAST_SPEED)
+            nx, ny, nz = deflected(gx * inverse, gy * inverse, gz * inverse, cosine, cos_azimuth, sin_azimuth)
+        else:
+            nx, ny, nz = isotropic_direction(word_direction)
+            store(rows, i + NX * lanes, nx)
+            store(rows, i + NY * lanes, ny)
+            store(rows, i + NZ * lanes, nz)
         after_x, after_y, after_z = scattered(
             vx, vy, vz, ux, uy, uz, relative, nx, ny, nz,
             electron_part, neutral_part,

@@ -32,7 +32,8 @@ VZ_BEFORE = 29  # v_z at the end of the flight, before the collision
 GAS_CELL = 30  # integer: gas * SPEED_CELLS + cell of the relative speed
 LAB_CELL = 31  # integer: cell of the electron's own speed, for the energy distribution
 OUTCOME = 32  # integer: CUT, NULL, ELASTIC or RARE
-NX, NY, NZ = 33, 34, 35  # direction after the collision
+NX, NY, NZ = 33, 34, 35  # direction after the collision; with angular laws the same rows hold what fixes it:
+UNIFORM, COS_AZIMUTH, SIN_AZIMUTH = NX, NY, NZ  # a random number in [1, 2) for cos chi, and the azimuth
 RECOIL = 36  # warm gas: expected energy given up in elastic recoil x weight / majorant of the gas
 ROWS = 37
 

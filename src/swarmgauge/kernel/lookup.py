@@ -13,7 +13,7 @@ from typing import NamedTuple
 import numpy as np
 from numba import njit
 
-from .bits import bits_of, double_of
+from .bits import bits_of, double_of, load_table
 from .functions import MANTISSA, ONE_BITS
 
 SPEED_BITS = 9
@@ -33,6 +33,14 @@ _ENERGY_FIRST = (1023 - 6) << ENERGY_BITS
 LAB_COARSER = 3  # the energy distribution is kept on speed cells joined by 2^3
 LAB_CELLS = SPEED_CELLS >> LAB_COARSER
 
+ANGLE_COARSER = 4  # angular laws are kept at the edges of speed cells joined by 2^4, and linear in speed between
+ANGLE_ROWS = (SPEED_CELLS >> ANGLE_COARSER) + 1
+PART_BITS = 5
+PARTS = 1 << PART_BITS  # of equal probability; cos chi is even in each
+LAW_SIZE = ANGLE_ROWS * PARTS * 2  # numbers of one law
+_PLACE_SHIFT = 52 - ANGLE_COARSER
+_PART_SHIFT = 52 - PART_BITS
+
 
 class Tables(NamedTuple):
     """Arrays of one mixture at one field; G gases, P non-elastic acting processes, all float64 unless said.
@@ -47,6 +55,12 @@ class Tables(NamedTuple):
     kind : (P,) int64; EXCITATION, IONIZATION or ATTACHMENT.
     loss : (P,); energy loss as a drop of the squared relative speed: threshold x (m + M) / M; superelastic: negative.
     sharing, sharing_fraction : (P,) int64 and float64; law of energy sharing in ionization.
+    ejected : (S, ENERGY_CELLS + 1), flat; cumulated densities of the ejected energy at the edges of the energy cells,
+        each up to a factor; ejected_at : (P,) int64, where that of a process begins.
+    energy_edges : (ENERGY_CELLS + 1,).
+    angles : (laws, ANGLE_ROWS, PARTS, 2), flat; angular laws, range of cos chi in each part.
+    mean_cosine : (laws, ANGLE_ROWS), flat. elastic_law : (G,) int64; law of each gas's elastic process.
+    scattering_law, binary : (P,) int64; law of each process, and whether an ionization ejects as free electrons would.
     electron_part, neutral_part : (G,); m / (m + M) and M / (m + M).
     neutral_speed : (G,); standard deviation of one velocity component of the neutrals.
     target_weight : (ENERGY_CELLS,); weight that an electron of this energy should have, where electrons are split.
@@ -64,6 +78,14 @@ class Tables(NamedTuple):
     loss: np.ndarray
     sharing: np.ndarray
     sharing_fraction: np.ndarray
+    ejected: np.ndarray
+    ejected_at: np.ndarray
+    energy_edges: np.ndarray
+    angles: np.ndarray
+    mean_cosine: np.ndarray
+    elastic_law: np.ndarray
+    scattering_law: np.ndarray
+    binary: np.ndarray
     electron_part: np.ndarray
     neutral_part: np.ndarray
     neutral_speed: np.ndarray
@@ -72,7 +94,7 @@ class Tables(NamedTuple):
 
 
 EXCITATION, IONIZATION, ATTACHMENT = 0, 1, 2
-SHARE_UNIFORM, SHARE_EQUAL, SHARE_FIXED = 0, 1, 2
+SHARE_UNIFORM, SHARE_EQUAL, SHARE_FIXED, SHARE_DENSITY = 0, 1, 2, 3
 
 
 def speed_edges() -> np.ndarray:
@@ -103,3 +125,28 @@ def energy_cell(energy):
     shifted = energy + ENERGY_OFFSET
     shifted = shifted if shifted < ENERGY_TOP else ENERGY_TOP
     return (bits_of(shifted) >> _ENERGY_SHIFT) - _ENERGY_FIRST
+
+
+@njit(forceinline=True)
+def angle_row(cell, fraction):
+    """(row, position from it to the next one) of the angular laws, from the cell of a speed and the position in it."""
+    place = double_of(((cell << _PLACE_SHIFT) & MANTISSA) | ONE_BITS) - 1.0
+    return cell >> ANGLE_COARSER, place + fraction * (1.0 / (1 << ANGLE_COARSER))
+
+
+@njit(forceinline=True)
+def drawn_cosine(angles, law, row, place, uniform):
+    """cos chi of a law, 0 .. laws - 1; row, place : see `angle_row`; uniform : random, in [1, 2)."""
+    bits = bits_of(uniform) & MANTISSA
+    at = law * LAW_SIZE + row * (2 * PARTS) + 2 * (bits >> _PART_SHIFT)
+    inside = double_of(((bits << PART_BITS) & MANTISSA) | ONE_BITS) - 1.0
+    low = load_table(angles, at)
+    low += place * (load_table(angles, at + 2 * PARTS) - low)
+    high = load_table(angles, at + 1)
+    high += place * (load_table(angles, at + 2 * PARTS + 1) - high)
+    return low + inside * (high - low)
+
+
+def angle_row_edges() -> np.ndarray:
+    """Speeds of the rows of the angular laws, sqrt(eV); shape (ANGLE_ROWS,)."""
+    return speed_edges()[:: 1 << ANGLE_COARSER]

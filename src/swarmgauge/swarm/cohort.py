@@ -87,7 +87,7 @@ class CohortRun:
         self.work: Workspace = new_workspace(plan.lanes, plan.lags, len(plan.mixture.gases), len(tables.kind))
         start = cohort_start(plan.seed, plan.stream_key, index)
         launch(self.work.rows, start, plan.electrons, plan.lanes, plan.start_edges_eV, plan.start_cumulated)
-        self._kernel = compiled_windows(plan.lanes, len(plan.mixture.gases), plan.thermal, plan.upkeep)
+        self._kernel = compiled_windows(plan.lanes, len(plan.mixture.gases), plan.thermal, plan.upkeep, plan.angular)
         self.work.population[0] = plan.electrons
 
     def windows(self, count: int, measuring: bool, flights_per_window: float = 0.0) -> np.ndarray:
@@ -180,7 +180,7 @@ def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
 
 
 def _cold_recoil(plan: Plan, lower: np.ndarray, upper: np.ndarray) -> np.ndarray:
-    """Energy given to atoms at rest in elastic collisions, summed over time: 2 m M/(m + M)^2 nu w^2.
+    """Energy given to atoms at rest in elastic collisions, summed over time: 2 m M/(m + M)^2 nu w^2 (1 - <cos chi>).
 
     The sum over the histogram is exact for a frequency linear in speed but for w^2, taken at the ends of the cells.
     """
@@ -197,6 +197,8 @@ def elastic_loss(
 ) -> np.ndarray:
     """Contribution of each speed cell to the recoil of a cold gas."""
     ratio = plan.mixture.gases[curve.gas].mass_ratio
-    factor = 2.0 * ratio / (1.0 + ratio) ** 2
+    factor = 2.0 * ratio / (1.0 + ratio) ** 2 * (1.0 - curve.process.scattering.mean_cosine(edges**2))
     share = plan.mixture.fractions[curve.gas]
-    return factor * share * (curve.low * lower * edges[:-1] ** 2 + curve.high * upper * edges[1:] ** 2)
+    return share * (
+        factor[:-1] * curve.low * lower * edges[:-1] ** 2 + factor[1:] * curve.high * upper * edges[1:] ** 2
+    )

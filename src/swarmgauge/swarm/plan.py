@@ -16,6 +16,7 @@ from swarmgauge.kernel.cohort import COMBED, COUPLED, SPLIT
 from swarmgauge.kernel.lanes import lane_count
 from swarmgauge.kernel.lookup import Tables
 
+from .angles import has_angular_law
 from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve, process_curves
 from .field import Field
 from .rare import target_weights
@@ -36,7 +37,7 @@ LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by atta
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "cohort.py", "pilot.py")
+_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "angles.py", "cohort.py", "pilot.py")
 
 
 @dataclass(frozen=True, eq=False)
@@ -101,6 +102,11 @@ class Plan:
     def thermal(self) -> bool:
         """Whether the kernel draws neutrals; coupled runs always do, so that both take the same random numbers."""
         return self.mixture.temperature_K > 0.0 or bool(self.coupled_key)
+
+    @property
+    def angular(self) -> bool:
+        """Whether any acting process scatters, or ejects electrons, other than isotropically."""
+        return any(has_angular_law(curve) for curve in self.curves)
 
     @cached_property
     def stream_key(self) -> str:

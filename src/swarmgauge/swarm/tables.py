@@ -9,6 +9,7 @@ from swarmgauge.kernel.lookup import (
     ENERGY_CELLS,
     EXCITATION,
     IONIZATION,
+    SHARE_DENSITY,
     SHARE_EQUAL,
     SHARE_FIXED,
     SHARE_UNIFORM,
@@ -18,6 +19,7 @@ from swarmgauge.kernel.lookup import (
     speed_edges,
 )
 
+from .angles import angle_tables, ejected_tables
 from .curves import ProcessCurve, process_threshold
 
 TOWNSEND_IN_KERNEL_UNITS = 0.05  # acceleration (E/N) / 2e-20 V m^2
@@ -25,7 +27,13 @@ NEUTRAL_REACH = 9.5  # standard deviations: the kernel's normal numbers end at 6
 LARGEST_TIME = 1e300
 LEAST_SHARE = 1.0 / 64.0  # of the candidates of a mixture goes to every one of its gases
 _KIND = {"excitation": EXCITATION, "ionization": IONIZATION, "attachment": ATTACHMENT}
-_SHARING = {"uniform": SHARE_UNIFORM, "equal": SHARE_EQUAL, "fixed": SHARE_FIXED}
+_SHARING = {
+    "uniform": SHARE_UNIFORM,
+    "equal": SHARE_EQUAL,
+    "fixed": SHARE_FIXED,
+    "width": SHARE_DENSITY,
+    "table": SHARE_DENSITY,
+}
 # Gauss points as digits, because numpy finds them by LAPACK, whose last bits depend on the processor.
 # A standard normal number, 8 points (Hermite), and the sum of two squared ones, 4 points (Laguerre).
 _NORMAL = (
@@ -78,6 +86,12 @@ def build_tables(
     sigma = neutral_speeds(mixture)
     majorant, window_time = majorants(collision[:, :, 2:].max(axis=2), sigma, acceleration, window_scale)
     ratio = np.array([gas.mass_ratio for gas in mixture.gases])
+    ejected, ejected_at = ejected_tables(others)
+    angles, mean_cosine, law = angle_tables(curves, ratio)
+    elastic_law = np.zeros(gases, dtype=np.int64)
+    for curve, number in zip(curves, law, strict=True):
+        if curve.process.kind == "elastic":
+            elastic_law[curve.gas] = number
     return Tables(
         majorant=majorant.ravel(),
         inverse_majorant=1.0 / majorant[-1],
@@ -89,6 +103,14 @@ def build_tables(
         loss=np.array([_loss(mixture, c) for c in others], dtype=np.float64),
         sharing=np.array([_SHARING[c.process.sharing.kind] for c in others], dtype=np.int64),
         sharing_fraction=np.array([c.process.sharing.fraction for c in others], dtype=np.float64),
+        ejected=ejected.ravel(),
+        ejected_at=ejected_at,
+        energy_edges=energy_cell_edges(),
+        angles=angles.ravel(),
+        mean_cosine=mean_cosine.ravel(),
+        elastic_law=elastic_law,
+        scattering_law=law[[c.process.kind != "elastic" for c in curves]],
+        binary=np.array([c.process.ejecta == "binary" for c in others], dtype=np.int64),
         electron_part=ratio / (1.0 + ratio),
         neutral_part=1.0 / (1.0 + ratio),
         neutral_speed=sigma,

@@ -61,8 +61,26 @@ class Channel:
 
     @property
     def recoil(self) -> float:
-        """Part of its energy that an electron loses in an elastic collision with an atom at rest, 2 m M / (m + M)^2."""
+        """Part of its energy that an electron loses in an elastic collision with an atom at rest, 2 m M / (m + M)^2.
+
+        To be taken times 1 - <cos chi>.
+        """
         return 2.0 * self.gas.mass_ratio / (1.0 + self.gas.mass_ratio) ** 2
+
+    def kept_momentum(self, energy_eV: np.ndarray) -> np.ndarray:
+        """Mean part of the momentum that an electron keeps in the direction of flight, <cos chi> v'/v, at energies > 0.
+
+        After an ionization only by the angular law, as if no energy were shared; ejecta count as isotropic. A
+        superelastic collision is taken to leave the speed as it is, so that its momentum transfer stays positive.
+        """
+        law, threshold = self.process.scattering, self.process.threshold_eV
+        if self.process.kind == "attachment":
+            return np.zeros_like(energy_eV)
+        if self.process.kind == "elastic":
+            return law.mean_cosine(energy_eV)
+        if self.superelastic:
+            return law.mean_cosine(energy_eV + threshold)
+        return law.mean_cosine(energy_eV) * np.sqrt(np.maximum(1.0 - threshold / energy_eV, 0.0))
 
 
 @dataclass(frozen=True, eq=False)
@@ -70,14 +88,16 @@ class CollisionCurves:
     """All cross sections of a mixture, piecewise linear on a mesh.
 
     mesh : (points,), eV, from 0 to 10 keV. sections : (channels, points), m2 (m5 for three bodies).
-    momentum : (points,), m2, sum over the acting processes of share x cross section, reduced by M / (m + M) except for
-    attachment (an electron that is gone has lost all of its momentum).
-    recoil : (points,), m2, sum over elastic processes of share x loss of energy x cross section.
+    transfers : likewise, cross section x part of the momentum that is lost.
+    momentum : (points,), m2, sum over the acting processes of share x transfer, reduced by M / (m + M)
+    except for attachment (an electron that is gone has lost all of its momentum).
+    recoil : (points,), m2, sum over elastic processes of share x loss of energy x momentum transfer cross section.
     """
 
     channels: tuple[Channel, ...]
     mesh: np.ndarray
     sections: np.ndarray
+    transfers: np.ndarray
     momentum: np.ndarray
     recoil: np.ndarray
 
@@ -93,9 +113,9 @@ class CollisionCurves:
         """Means of momentum and recoil cross section between successive points, (2, len(points) - 1), m2."""
         return np.diff(self._momentum_and_recoil(points), axis=1) / np.diff(points)
 
-    def mean_section(self, row: int, points: np.ndarray) -> np.ndarray:
-        """Means of one cross section between successive points, (len(points) - 1,)."""
-        return np.diff(_Antiderivative(self.mesh, self.sections[row : row + 1], 0)(points)[0]) / np.diff(points)
+    def mean_transfer(self, row: int, points: np.ndarray) -> np.ndarray:
+        """Means of one momentum transfer between successive points, (len(points) - 1,)."""
+        return np.diff(_Antiderivative(self.mesh, self.transfers[row : row + 1], 0)(points)[0]) / np.diff(points)
 
     def maxwellian_rates(self, mean_energy_eV: float) -> np.ndarray:
         """<sqrt(energy) x cross section> over the Maxwellian of a mean energy, (channels,), by two points a step."""
@@ -122,16 +142,19 @@ def collision_curves(mixture: Mixture) -> CollisionCurves:
     channels = _channels(mixture)
     mesh = _mesh(channels)
     sections = np.empty((len(channels), len(mesh)))
+    transfers = np.empty_like(sections)
     momentum = np.zeros(len(mesh))
     recoil = np.zeros(len(mesh))
     for row, channel in enumerate(channels):
         sections[row, 1:] = channel.section(mesh[1:])
         sections[row, 0] = sections[row, 1]
         kept = 1.0 if channel.process.kind == "attachment" else 1.0 / (1.0 + channel.gas.mass_ratio)
-        momentum += channel.weight * kept * sections[row]
+        transfers[row, 1:] = sections[row, 1:] * (1.0 - channel.kept_momentum(mesh[1:]))
+        transfers[row, 0] = transfers[row, 1]
+        momentum += channel.weight * kept * transfers[row]
         if channel.process.kind == "elastic":
-            recoil += channel.weight * channel.recoil * sections[row]
-    return CollisionCurves(tuple(channels), mesh, sections, momentum, recoil)
+            recoil += channel.weight * channel.recoil * transfers[row]
+    return CollisionCurves(tuple(channels), mesh, sections, transfers, momentum, recoil)
 
 
 def _channels(mixture: Mixture) -> list[Channel]:
@@ -153,6 +176,8 @@ def _mesh(channels: list[Channel]) -> np.ndarray:
         inner = np.asarray(channel.process.breakpoints_eV, dtype=float)
         jumps = np.array([channel.process.threshold_eV, *inner[:1], *inner[-1:]])
         gain = channel.process.threshold_eV if channel.superelastic else 0.0
+        turns = channel.process.scattering.breakpoints_eV
+        points.append(turns - gain)
         points += [place - gain for place in (inner, jumps, jumps * (1.0 - _SIDE), jumps * (1.0 + _SIDE))]
     mesh = np.unique(np.concatenate(points))
     return np.concatenate([[0.0], mesh[(mesh >= _LOWEST_EV) & (mesh <= TOP_EV)]])

@@ -27,10 +27,12 @@ from functools import cached_property
 import numpy as np
 from scipy.linalg import lu_factor, lu_solve
 
-from .two_term_curves import CollisionCurves
+from .two_term_curves import TOP_EV, Channel, CollisionCurves
 
 _LEAST_MOMENTUM_SHARE = 0.1  # where attachment outruns collisions, s would go through zero: keep this part of it
 _LEAST_SECTION_M2 = 1e-27  # stands for zero
+_QUANTILES = 64  # of a density of ejected energies
+_LEAST_EJECTED_EV, _EJECTED_POINTS = 1e-4, 1000
 
 
 class Grid:
@@ -91,7 +93,7 @@ class EnergyOperator:
     def friction_share(self, row: int) -> np.ndarray:
         """Part of the friction that comes from the elastic process in a row of the curves, (n - 1,)."""
         channel = self.curves.channels[row]
-        own = channel.weight * channel.recoil * self.curves.mean_section(row, self.grid.centre) * self.grid.middle**2
+        own = channel.weight * channel.recoil * self.curves.mean_transfer(row, self.grid.centre) * self.grid.middle**2
         return np.divide(own, self.friction, out=np.zeros_like(own), where=self.friction > 0.0)
 
     def _settle_reversible(self, log_f: Callable[[np.ndarray], np.ndarray]) -> dict[int, np.ndarray]:
@@ -252,22 +254,37 @@ def _transfers(curves: CollisionCurves, grid: Grid, events: np.ndarray) -> np.nd
         left = grid.centre[origin] - channel.loss_eV
         for share, number in _products(channel):
             landings.append(_landing(grid, share * left, number * amount, origin))
+        for ejected in _ejected_quantiles(channel, left):
+            landings.append(_landing(grid, ejected, amount / _QUANTILES, origin))
+            landings.append(_landing(grid, left - ejected, amount / _QUANTILES, origin))
         if channel.process.kind == "ionization" and channel.process.sharing.kind == "uniform":
             result[:, origin] += _uniform_pair(grid, left, amount)
     place, amount = (np.concatenate(parts) for parts in zip(*landings, strict=True))
     return result + _matrix(size, place, amount)
 
 
-def _products(channel) -> list[tuple[float, float]]:
+def _products(channel: Channel) -> list[tuple[float, float]]:
     """(share of the energy left, number) of electrons that come out of a collision with a sharp energy."""
     process = channel.process
     if process.kind == "excitation":
         return [(1.0, 1.0)]
-    if process.kind == "attachment" or process.sharing.kind == "uniform":
+    if process.kind == "attachment" or process.sharing.kind == "uniform" or process.sharing.has_density:
         return []
     if process.sharing.kind == "equal":
         return [(0.5, 2.0)]
     return [(process.sharing.fraction, 1.0), (1.0 - process.sharing.fraction, 1.0)]
+
+
+def _ejected_quantiles(channel: Channel, left: np.ndarray) -> list[np.ndarray]:
+    """Energies of the ejected electron at the middles of parts of equal probability, where sharing has a density."""
+    sharing = channel.process.sharing
+    if channel.process.kind != "ionization" or not sharing.has_density:
+        return []
+    fine = np.concatenate([[0.0], np.geomspace(_LEAST_EJECTED_EV, TOP_EV, _EJECTED_POINTS)])
+    below = sharing.cumulated(fine)
+    limit = np.interp(0.5 * left, fine, below)
+    shares = (np.arange(_QUANTILES) + 0.5) / _QUANTILES
+    return [np.minimum(np.interp(share * limit, below, fine), 0.5 * left) for share in shares]
 
 
 def _landing(grid: Grid, energy: np.ndarray, amount: np.ndarray, origin: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
