@@ -4,7 +4,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from kernel.model_gases import HELIUM_U, constant_frequency, model, power_law
+from kernel.model_gases import ELECTRON_U, HELIUM_U, constant_frequency, model, power_law
 
 from swarm.swarms import cohorts
 from swarmgauge.gas import Mixture
@@ -50,16 +50,28 @@ def test_strong_fields_that_have_a_steady_swarm(seed, name, field):
 
 
 def test_attachment_of_all_electrons(seed):
-    # Frequency 20 times that of elastic collisions: no cohort survives a window of 40 collisions.
-    mixture = model(HELIUM_U, constant_frequency("elastic", 1e-14), constant_frequency("attachment", 2e-13))
+    # Frequency 20 times that of elastic collisions: no cohort survives a window of 40 of them; shorter ones are tried.
+    mixture = model(ELECTRON_U, constant_frequency("elastic", 1e-14), constant_frequency("attachment", 2e-13))
     field = Field(10.0)
     plan = first_plan(mixture, field, seed, solved(mixture, field), electrons=32)
-    long = fly_pilot(_with_window(plan, 100.0 * plan.window_time))
-    assert long.outcome == "extinct"
-    assert long.plan is None
-    assert long.note == "attachment took all electrons within one window"
-    short = fly_pilot(plan)  # windows follow the attachment: the comb keeps the swarm alive
-    assert short.outcome == "steady"
+    assert fly_pilot(plan).outcome == "steady"  # windows follow the attachment: the comb keeps the swarm alive
+    long = replace(plan, window_time=30.0 * plan.window_time, lags=2, memory_windows=9)
+    pilot = fly_pilot(long)
+    assert pilot.outcome == "steady"
+    assert pilot.plan.window_time * pilot.plan.memory == pytest.approx(long.window_time * long.memory)
+    assert pilot.plan.window_time <= long.window_time / 4
+    longest = fly_pilot(replace(long, window_time=1e6 * plan.window_time))
+    assert longest.outcome == "extinct"
+    assert longest.plan is None
+    assert longest.note == "attachment took all electrons within the shortest window tried"
+
+
+def test_attachment_before_energies_settle(seed):
+    # In helium energies take 3700 collisions to relax, and attachment is 20 times as frequent as these.
+    mixture = model(HELIUM_U, constant_frequency("elastic", 1e-14), constant_frequency("attachment", 2e-13))
+    pilot = outcome(mixture, 10.0, seed)
+    assert pilot.outcome == "extinct"
+    assert pilot.note == "attachment takes the electrons long before their energies settle"
 
 
 def _with_window(plan, window_time):

@@ -9,7 +9,7 @@ from swarmgauge.kernel.cohort import SERIES_ENERGY, SERIES_TIME
 from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
 from .cohort import CohortFailure, CohortRun
-from .plan import LEAST_FLIGHTS, Plan
+from .plan import LEAST_FLIGHTS, MEMORY, MOST_LAGS, Plan
 from .two_term import TwoTerm
 
 PILOT_INDEX = -1  # its stream belongs to no cohort of the result
@@ -17,7 +17,8 @@ MOST_STRETCHES = 12
 AGREEMENT = 3.0  # standard errors between two stretches that count as equal
 TOP_SPEED = 100.0  # sqrt(eV): 10 keV
 LARGEST_TOP_SHARE = 1e-3
-MOST_HALVINGS = 5
+MOST_TRIES = 5
+MOST_MEMORY = 5000  # windows; a swarm that loses electrons in each of so many is of no use to anybody
 
 
 @dataclass(frozen=True, eq=False)
@@ -40,18 +41,30 @@ class Pilot:
 def fly_pilot(plan: Plan) -> Pilot:
     """Fly one cohort from the start distribution until two successive stretches have the same mean energy.
 
-    A stretch is one memory (`lags` windows). All before the second of the two is cut; at least one stretch, since
+    A stretch is one memory. All before the second of the two is cut; at least one stretch, since
     displacement histories must be full. A swarm that has not come to rest after 12 stretches and still gains energy, or
-    that spends more than 0.1 % of its time above 10 keV, runs away.
+    that spends more than 0.1 % of its time above 10 keV, runs away. A swarm that dies out within a window, or outgrows
+    its lanes, gets shorter windows. One that dies out thousands of times within a memory counts as extinct.
     """
-    for _ in range(MOST_HALVINGS):
+    for _ in range(MOST_TRIES):
+        if plan.memory > MOST_MEMORY:
+            return Pilot(
+                None, "extinct", np.zeros(0), "attachment takes the electrons long before their energies settle"
+            )
         try:
             return _fly(plan)
         except CohortFailure as failure:
-            if str(failure) == "extinct":
-                return Pilot(None, "extinct", np.zeros(0), "attachment took all electrons within one window")
-            plan = replace(plan, window_time=0.5 * plan.window_time)
+            died_out = str(failure) == "extinct"
+            plan = _shorter(plan, 4 if died_out else 2)
+    if died_out:
+        return Pilot(None, "extinct", np.zeros(0), "attachment took all electrons within the shortest window tried")
     return Pilot(None, "runaway", np.zeros(0), "the population grew by half within the shortest window tried")
+
+
+def _shorter(plan: Plan, factor: int) -> Plan:
+    """The plan with windows shorter by a factor, and the same memory."""
+    memory = factor * plan.memory
+    return replace(plan, window_time=plan.window_time / factor, lags=min(memory, MOST_LAGS), memory_windows=memory)
 
 
 def _fly(plan: Plan) -> Pilot:
@@ -59,16 +72,16 @@ def _fly(plan: Plan) -> Pilot:
     means: list[float] = []
     errors: list[float] = []
     for stretch in range(MOST_STRETCHES):
-        series = run.windows(plan.lags, True)
+        series = run.windows(plan.memory, True)
         window_means = series[:, SERIES_ENERGY] / series[:, SERIES_TIME]
         means.append(float(series[:, SERIES_ENERGY].sum() / series[:, SERIES_TIME].sum()))
-        errors.append(_stretch_error(window_means))
+        errors.append(_stretch_error(window_means, plan.memory / MEMORY))
         if _top_share(run) > LARGEST_TOP_SHARE:
             return Pilot(None, "runaway", np.array(means), "more than 0.1 % of the time is spent above 10 keV")
         if stretch > 0:
             step = means[-1] - means[-2]
             if abs(step) < AGREEMENT * math.hypot(errors[-1], errors[-2]):
-                note = f"mean energy of stretches {stretch} and {stretch + 1} of {plan.lags} windows agrees"
+                note = f"mean energy of stretches {stretch} and {stretch + 1} of {plan.memory} windows agrees"
                 return Pilot(_with_windows(plan, run, stretch), "steady", np.array(means), note)
     if means[-1] > means[-3] > means[-5]:
         return Pilot(None, "runaway", np.array(means), "the mean energy still rises after twelve memories")
@@ -76,11 +89,11 @@ def _fly(plan: Plan) -> Pilot:
     return Pilot(_with_windows(plan, run, MOST_STRETCHES), "steady", np.array(means), note)
 
 
-def _stretch_error(window_means: np.ndarray) -> float:
-    """Standard error of the mean of windows, correlated over some two of them (half a relaxation time each)."""
+def _stretch_error(window_means: np.ndarray, correlated: float) -> float:
+    """Standard error of the mean of windows, correlated over so many of them, and over two at least."""
     if len(window_means) < 2:
         return math.inf
-    return math.sqrt(5.0 * float(window_means.var(ddof=1)) / len(window_means))
+    return math.sqrt(max(5.0, 1.0 + 2.0 * correlated) * float(window_means.var(ddof=1)) / len(window_means))
 
 
 def _top_share(run: CohortRun) -> float:
@@ -93,8 +106,8 @@ def _top_share(run: CohortRun) -> float:
 
 def _with_windows(plan: Plan, run: CohortRun, cut_stretches: int) -> Plan:
     """The plan with its cut, and as many measured windows as make relaxation a third of the work and enough flights."""
-    relaxation = cut_stretches * plan.lags
-    flown = min(cut_stretches + 1, MOST_STRETCHES) * plan.lags
+    relaxation = cut_stretches * plan.memory
+    flown = min(cut_stretches + 1, MOST_STRETCHES) * plan.memory
     flights_per_window = max(int(run.work.counts.sum()) / flown, 1.0)
     measured = max(2 * relaxation, math.ceil(LEAST_FLIGHTS / flights_per_window))
     return plan.with_windows(relaxation, measured)

@@ -34,6 +34,7 @@ WINDOWS_PER_RELAXATION = 2.0
 LEAST_FLIGHTS_PER_WINDOW = 40.0  # below these the work at the end of a window would outweigh the flights
 START_BITS = 16  # of the start distribution: its last bits differ between processors, and must not flip a rounding
 LARGEST_CHANGE = 0.15  # population change in a window, by ionization or by attachment
+LARGEST_LOSS = 1.2  # of e-foldings by attachment in a window, where memories are long
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
@@ -44,7 +45,8 @@ _SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "angles.py", "cohort
 class Plan:
     """What a cohort is a function of, with its index.
 
-    mixture, field, seed : the point. electrons : number in a cohort. lags : windows in a displacement history.
+    mixture, field, seed : the point. electrons : number in a cohort. lags : windows in a displacement history;
+    memory_windows : windows that the swarm remembers, more than `lags` where attachment forces very short windows.
     window_time : kernel units. start_edges_eV, start_cumulated : (n + 1,), start distribution.
     relaxation_windows, measured_windows : dropped and used windows of a cohort.
     rare, target_weight : processes for which electrons are split, and the weights, (ENERGY_CELLS,); () and None else.
@@ -65,6 +67,17 @@ class Plan:
     rare: tuple[str, ...] = ()
     target_weight: np.ndarray | None = None
     coupled_key: str = ""
+    memory_windows: int = 0
+
+    @property
+    def memory(self) -> int:
+        """Windows after which a swarm has forgotten its start."""
+        return max(self.lags, self.memory_windows)
+
+    @property
+    def follows_memory(self) -> bool:
+        """Whether displacement histories reach back over the whole memory: else they give no diffusion."""
+        return self.lags >= self.memory_windows
 
     @property
     def acceleration(self) -> float:
@@ -137,20 +150,23 @@ def first_plan(
     """A plan from the two-term solution; windows are still to be set by a pilot.
 
     A window is half a relaxation time or 40 collisions, whichever is longer, but no more than what changes the
-    population by 15 %. Numbers that come from linear algebra are rounded (window to 2 digits, start distribution to 16
+    population by 15 %; where attachment would make histories of more than 80 windows necessary, no more than what takes
+    70 % of it. Numbers that come from linear algebra are rounded (window to 2 digits, start distribution to 16
     bits), so that the last bits, which depend on the processor, do not reach the swarm.
     """
     values = two_term.values
     collisions = values["collision_frequency_over_N"] / RATE_UNIT
     relaxation = min(two_term.relaxation_frequency_over_N / RATE_UNIT, collisions)
-    change = max(abs(values.get(f"{kind}_frequency_over_N", 0.0)) for kind in ("ionization", "attachment")) / RATE_UNIT
+    gain, loss = (abs(values.get(f"{k}_frequency_over_N", 0.0)) / RATE_UNIT for k in ("ionization", "attachment"))
     window = max(1.0 / (WINDOWS_PER_RELAXATION * relaxation), LEAST_FLIGHTS_PER_WINDOW / collisions)
-    if change > 0.0:
-        window = min(window, LARGEST_CHANGE / change)
+    if max(gain, loss) > 0.0:
+        shortest = min(LARGEST_CHANGE / gain if gain > 0.0 else math.inf, LARGEST_LOSS / loss if loss > 0.0 else window)
+        needed = min(shortest, MEMORY / (relaxation * (MOST_LAGS - 5)))  # rounding may take 5 %
+        window = min(window, max(LARGEST_CHANGE / max(gain, loss), needed))
     window = float(f"{window:.2g}")
-    lags = min(max(math.ceil(MEMORY / (relaxation * window) - 0.5), 2), MOST_LAGS)
+    memory = max(math.ceil(MEMORY / (relaxation * window) - 0.5), 2)
     if electrons is None:
-        long_memory = MEMORY * collisions / relaxation > LONG_MEMORY_FLIGHTS
+        long_memory = MEMORY * collisions / relaxation > LONG_MEMORY_FLIGHTS and memory <= MOST_LAGS
         electrons = ELECTRONS_OF_LONG_MEMORY if long_memory else ELECTRONS
     weights = None
     if rare:
@@ -162,13 +178,14 @@ def first_plan(
         field,
         seed,
         electrons,
-        lags,
+        min(memory, MOST_LAGS),
         window,
         edges,
         cumulated,
         window_scale=window_scale,
         rare=rare,
         target_weight=weights,
+        memory_windows=memory,
     )
 
 

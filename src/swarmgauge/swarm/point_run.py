@@ -176,6 +176,7 @@ class PointRun:
                 "window_time": plan.window_time,
                 "electrons": plan.electrons,
                 "lags": plan.lags,
+                "memory_windows": plan.memory_windows,
                 "relaxation_windows": plan.relaxation_windows,
                 "measured_windows": plan.measured_windows,
                 "start_edges_eV": plan.start_edges_eV,
@@ -205,6 +206,7 @@ class PointRun:
                 int(state["measured_windows"]),
                 rare=self.rare,
                 target_weight=state.get("target_weight"),
+                memory_windows=int(state.get("memory_windows", 0)),
             )
             self._sums = dict(enumerate(state["sums"]))
         self.set_pilot(Pilot(plan, state["outcome"], state["stretch_energies"], state["note"]))
@@ -259,6 +261,11 @@ class PointRun:
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
         lines = []
+        if self.pilot and self.pilot.plan and not self.pilot.plan.follows_memory:
+            lines.append(
+                "attachment is so strong that displacements cannot be followed long enough: no diffusion and no bulk "
+                "coefficients are given"
+            )
         noted = sorted(((s, n) for n, s in above.items() if s > LARGEST_TABLE_SHARE and self._is_cut(n)), reverse=True)
         if noted:
             shown = ", ".join(f"{name} {100 * share:.2g} %" for share, name in noted[:3])

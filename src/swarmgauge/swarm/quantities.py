@@ -56,6 +56,11 @@ def unit_of(name: str) -> str:
     return UNITS[family(name)]
 
 
+def needs_displacements(name: str) -> bool:
+    """Whether a quantity rests on the ways of electrons and their ancestors, not on their velocities alone."""
+    return name.endswith("_bulk") or any(word in name for word in ("diffusion_", "characteristic_energy_", "skewness_"))
+
+
 def in_order(names) -> list[str]:
     """Names in the order of output; those of one family keep their order."""
     return sorted(names, key=lambda name: _ORDER[family(name)])

@@ -33,7 +33,7 @@ from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
 from .higher_order import energy_diffusion, skewness_flux, skewness_source
 from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
-from .quantities import in_order
+from .quantities import in_order, needs_displacements
 from .tables import LEAST_SHARE
 
 SKEWNESS_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2**2  # Q N^2, 1/(m^3 s)
@@ -62,8 +62,13 @@ class Reducer:
         return rows[:, self.layout.slices[name]] / rows[:, self.layout.slices["time"]]
 
     def quantities(self, rows: np.ndarray) -> dict[str, np.ndarray]:
-        """Quantity name to values, one per row, in the order of output."""
+        """Quantity name to values, one per row, in the order of output.
+
+        What needs displacements is left out where they are not followed over the whole memory.
+        """
         result = {**self.transport(rows), **self.rates(rows)}
+        if not self.plan.follows_memory:
+            result = {name: value for name, value in result.items() if not needs_displacements(name)}
         result.update(self.maxwellian(result["mean_energy"]))
         result.update(self.power(rows, result))
         return {name: result[name] for name in in_order(result)}
