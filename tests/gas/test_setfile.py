@@ -11,6 +11,7 @@ from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
 from swarmgauge.gas import (
+    AngleTable,
     Gas,
     PowerLaw,
     Process,
@@ -34,12 +35,12 @@ def bits(gas):
         if isinstance(value, float | int) and not isinstance(value, bool):
             return float(value).hex()
         if isinstance(value, np.ndarray):
-            return [float(number).hex() for number in value]
+            return [float(number).hex() for number in value.ravel()]
         if isinstance(value, dict):
             return {key: plain(inner) for key, inner in value.items()}
         if isinstance(value, tuple | list):
             return [plain(inner) for inner in value]
-        if isinstance(value, Process | Table | PowerLaw | Ramp | Sharing):
+        if isinstance(value, Process | Table | PowerLaw | Ramp | Sharing | AngleTable):
             return {name: plain(inner) for name, inner in vars(value).items()}
         return value
 

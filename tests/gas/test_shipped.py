@@ -13,7 +13,7 @@ MODELS = [name for name in shipped_sets() if name.startswith("model-")]
 
 
 def test_all_sets_are_there():
-    assert len(REAL) == 12
+    assert len(REAL) == 15
     assert len(MODELS) == 8
 
 

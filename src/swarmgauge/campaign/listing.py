@@ -8,10 +8,10 @@ from swarmgauge.gas import Gas, load_named, shipped_sets
 
 def sets_table() -> Iterator[str]:
     """One line per shipped set, under a head."""
-    yield f"{'set':<27}{'formula':<8}{'elastic_is':<24}{'processes':>9}  {'trusted Td':<9}"
+    yield f"{'set':<33}{'gas':<6}{'elastic_is':<19}{'processes':>9}  trusted Td"
     for name in shipped_sets():
         gas = load_named(name)
-        yield f"{name:<27}{gas.formula:<8}{gas.elastic_is:<24}{len(gas.processes):>9}  {_trusted(gas):<9}".rstrip()
+        yield f"{name:<33}{gas.formula:<6}{gas.elastic_is:<24}{len(gas.processes):>4}  {_trusted(gas)}"
 
 
 def sets_json() -> list[dict[str, Any]]:

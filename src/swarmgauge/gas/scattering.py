@@ -73,7 +73,7 @@ class Forward:
         return "forward"
 
     def __str__(self) -> str:
-        return "forward law"
+        return "the forward law"
 
 
 @dataclass(frozen=True, eq=False)

@@ -104,7 +104,7 @@ def _scattering(law: Scattering) -> str | None:
         return None
     entries: dict[str, str] = {}
     if isinstance(law, AngleTable):
-        rows = "".join(f"{_column(row)},\n" for row in law.shape)
+        rows = "".join(f"  {_inline_list(row)},\n" for row in law.shape)
         entries = {"angles_deg": _column(law.angles_deg), "energy_eV": _column(law.energy_eV), "shape": f"[\n{rows}]"}
     elif isinstance(law, ScreenedToRatio):
         table = {"energy_eV": _column(law.energy_eV), "ratio": _column(law.ratio)}

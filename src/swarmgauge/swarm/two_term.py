@@ -2,8 +2,9 @@
 
 The electron distribution is cut after its second Legendre term, f0 + f1 cos(theta), and grows or decays as a whole in
 time (pulsed Townsend). It gives the start distribution of the Monte Carlo swarm and stands beside its results.
-Scattering is isotropic; elastic collisions are taken to first order in the mass ratio, with a gas at its temperature;
-the cross sections of other processes are those of the electron's own energy.
+Angular laws enter by the momentum that an electron keeps on average, at its energy before the collision (ejecta of
+ionization count as isotropic); elastic collisions are taken to first order in the mass ratio, with a gas at its
+temperature; the cross sections of other processes are those of the electron's own energy.
 
 References: J. H. Parker and J. J. Lowke, Phys. Rev. 181, 290 (1969); H. R. Skullerud, Aust. J. Phys. 27, 195 (1974);
 K. Kumar, H. R. Skullerud and R. E. Robson, Aust. J. Phys. 33, 343 (1980). Numerics: two_term_operator, two_term_modes.
