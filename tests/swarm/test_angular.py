@@ -55,7 +55,7 @@ def transport_by_momentum_transfer(molar_mass, field, temperature, momentum_freq
     return {"drift_velocity_flux": drift, "drift_velocity_bulk": drift, "mean_energy": energy}
 
 
-@pytest.mark.parametrize("temperature", [0.0, ROOM_K])
+@pytest.mark.parametrize("temperature", [0.0, pytest.param(ROOM_K, marks=pytest.mark.slow)])
 @pytest.mark.parametrize("name", LAWS)
 def test_drift_follows_the_momentum_transfer_alone(seed, name, temperature):
     # Atoms as light as electrons: recoil and directions matter most there, and the swarm forgets fast.
