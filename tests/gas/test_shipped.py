@@ -192,3 +192,17 @@ def test_laws_of_the_ionization_model(name, F):
     np.testing.assert_allclose(sections.get("ionization", np.zeros(4)), F * ramp, rtol=1e-12)
     assert E_MASS / gas.mass_kg == pytest.approx(1e-3, rel=1e-14)
     assert all(process.sharing.kind == "equal" for process in gas.processes if process.kind == "ionization")
+
+
+@pytest.mark.parametrize("name", sorted(shipped_sets()))
+def test_vibrational_levels(name):
+    # Vibration of a diatomic molecule is not degenerate, nor is the asymmetric stretch of carbon dioxide; its bending
+    # is, twice (G. Herzberg, Molecular Spectra and Molecular Structure). Lumped losses state nothing.
+    marked = {p.id: p for p in load_named(name).processes if p.vibrational}
+    for process in marked.values():
+        bending = name.startswith("carbon-dioxide") and process.id == "v1"
+        assert (process.degeneracy_lower, process.degeneracy_upper) == (1.0, 2.0 if bending else 1.0)
+        assert process.threshold_eV < 4.0
+    assert bool(marked) is name.startswith(("carbon", "nitrogen", "oxygen"))
+    lumps = [p for p in load_named(name).processes if "group" in p.label or "single-level" in p.label]
+    assert not any(p.is_level for p in lumps)
