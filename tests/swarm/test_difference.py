@@ -7,6 +7,8 @@ from kernel.model_gases import ELECTRON_U, constant_frequency, model
 
 import swarmgauge as sg
 from swarmgauge.gas import InputError
+from swarmgauge.swarm.difference import coupled_plans
+from swarmgauge.swarm.plan import MOST_LAGS, first_plan, solved
 
 
 def test_equal_swarms_have_no_difference(seed):
@@ -47,3 +49,16 @@ def test_too_few_cohorts_are_refused():
     mixture = sg.Mixture({"model-ramp": 1.0})
     with pytest.raises(InputError, match="at least 20"):
         sg.simulate_difference(mixture, mixture, sg.Field(12.0), cohorts=10)
+
+
+def test_the_longer_memory_holds_for_both(seed):
+    # Light atoms forget soon; heavy ones do not, and attachment forces short windows on them.
+    light = model(20 * ELECTRON_U, constant_frequency("elastic", 1e-13))
+    heavy = model(400 * ELECTRON_U, constant_frequency("elastic", 1e-13), constant_frequency("attachment", 1e-14))
+    field = sg.Field(10.0)
+    alone = first_plan(heavy, field, seed, solved(heavy, field))
+    both, swapped = coupled_plans(light, heavy, field, seed), coupled_plans(heavy, light, field, seed)
+    for plan in (*both, *swapped):
+        assert plan.memory * plan.window_time >= alone.memory * alone.window_time * (1 - 1e-9)
+        assert plan.lags == both[0].lags <= MOST_LAGS
+        assert plan.follows_memory == alone.follows_memory

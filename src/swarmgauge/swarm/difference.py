@@ -18,7 +18,7 @@ from .cohort import run_cohort
 from .estimate import Estimate, jackknife
 from .field import Field
 from .pilot import fly_pilot
-from .plan import Plan, first_plan, solved
+from .plan import MOST_LAGS, Plan, first_plan, solved
 from .quantities import unit_of
 from .reduce import Reducer
 
@@ -89,12 +89,12 @@ def coupled_plans(first: Mixture, second: Mixture, field: Field, seed: int) -> t
     """Two plans with the same streams, windows, memory and start distribution; the longer relaxation of both."""
     plans = [first_plan(mixture, field, seed, solved(mixture, field)) for mixture in (first, second)]
     window = min(plan.window_time for plan in plans)
-    memory = max(plan.window_time * plan.lags for plan in plans)
-    lags = int(np.ceil(memory / window - 1e-9))
+    memory = int(np.ceil(max(plan.window_time * plan.memory for plan in plans) / window - 1e-9))
     common = replace(
         plans[0],
         window_time=window,
-        lags=lags,
+        lags=min(memory, MOST_LAGS),
+        memory_windows=memory,
         electrons=min(plan.electrons for plan in plans),
         coupled_key=f"{plans[0].stream_key}+{plans[1].stream_key}",
     )
