@@ -122,7 +122,9 @@ def test_binary_ejecta_keep_the_momentum(seed):
     assert_exact(estimates, exact, {"drift": 2e-3, "mean": 2e-3, "ionization": 1e-3})
 
 
-@pytest.mark.parametrize("law", [Screened([0.1, 3.0], [-0.5, 0.9]), TABLE], ids=["screened", "table"])
+@pytest.mark.parametrize(
+    "law", [pytest.param(Screened([0.1, 3.0], [-0.5, 0.9]), marks=pytest.mark.slow), TABLE], ids=["screened", "table"]
+)
 def test_thermal_equilibrium_with_angular_laws(seed, law):
     # Elastic collisions of any law keep the Maxwellian of the gas (detailed balance): mean energy 3/2 kT.
     mixture = mixture_of(ELECTRON_U, power_law("elastic", 6e-20, scattering=law), temperature_K=30000.0)
