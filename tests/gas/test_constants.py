@@ -1,7 +1,9 @@
 """Constants against scipy's table, which may follow a later adjustment than 2018."""
 
+import numpy as np
 import pytest
 import scipy.constants
+import scipy.special
 
 from swarmgauge.gas import constants
 
@@ -23,3 +25,7 @@ def test_derived():
     # 593097 m/s: electron of 1 eV; 1 Td = 1e-21 V m^2: definition.
     assert abs(constants.SPEED_1_EV - 593097) < 1
     assert constants.TOWNSEND == 1e-21
+
+
+def test_gauss_points():
+    np.testing.assert_allclose(np.transpose(constants.GAUSS_LEGENDRE), scipy.special.roots_legendre(4), rtol=1e-15)

@@ -5,18 +5,12 @@ from typing import Any, Literal
 
 import numpy as np
 
+from .constants import GAUSS_LEGENDRE
 from .errors import ProcessError
 from .power import strict_power
 
 OPAL_EXPONENT = 2.1
 KINDS = ("uniform", "equal", "fixed", "width", "table")
-# Gauss-Legendre, 4 points, as digits: numpy finds them by LAPACK, whose last bits depend on the processor.
-_GAUSS = (
-    (-0.8611363115940526, 0.34785484513745357),
-    (-0.33998104358485626, 0.6521451548625464),
-    (0.33998104358485626, 0.6521451548625464),
-    (0.8611363115940526, 0.34785484513745357),
-)
 
 
 @dataclass(frozen=True, eq=False)
@@ -57,7 +51,7 @@ class Sharing:
         if self.has_density:
             low, width = edges_eV[:-1], np.diff(edges_eV)
             pieces = np.zeros(len(low))
-            for x, weight in _GAUSS:
+            for x, weight in GAUSS_LEGENDRE:
                 pieces += 0.5 * weight * width * self._density_at(low + 0.5 * (1.0 + x) * width)
             result[1:] = np.cumsum(pieces)
         return result

@@ -13,19 +13,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from swarmgauge.gas import Gas, Mixture, Process
+from swarmgauge.gas.constants import GAUSS_LEGENDRE
 from swarmgauge.gas.levels import superelastic_cross_section
 from swarmgauge.kernel.lookup import SPEED_CELLS, speed_edges
 
 UNIT_CROSS_SECTION_M2 = 1e-20  # the kernel's unit
 NEAR_REST = 32  # speed cells, up to 2.4e-4 eV
-# Gauss points as digits, because numpy finds them by LAPACK, whose last bits depend on the processor.
-# Legendre, 4 points: exact for w x (piecewise linear in w^2).
-_GAUSS = (
-    (-0.8611363115940526, 0.34785484513745357),
-    (-0.33998104358485626, 0.6521451548625464),
-    (0.33998104358485626, 0.6521451548625464),
-    (0.8611363115940526, 0.34785484513745357),
-)
 
 
 @dataclass(frozen=True, eq=False)
@@ -86,7 +79,7 @@ def frequency_on_cells(
     width = edges[cell + 1] - edges[cell]
     mean = np.zeros(len(middle))
     moment = np.zeros(len(middle))
-    for x, weight in _GAUSS:
+    for x, weight in GAUSS_LEGENDRE:
         speed = middle + half * x
         value = frequency(speed)
         mean += weight * half * value / width
@@ -112,7 +105,7 @@ def _tamed_pole(frequency: Callable[[np.ndarray], np.ndarray], points: np.ndarra
     """
     middle, half = 0.5 * (points[1:] + points[:-1]), 0.5 * (points[1:] - points[:-1])
     second = third = 0.0
-    for x, weight in _GAUSS:
+    for x, weight in GAUSS_LEGENDRE:
         part = (middle + half * x) / edges[-1]
         value = weight * half / edges[-1] * frequency(middle + half * x) * part**2
         second += math.fsum(value)
