@@ -95,6 +95,9 @@ def test_inelastic_directions_count_likewise(seed, law):
         ELECTRON_U, 300.0, 0.0, NU * (momentum_share(Screened([0.0], [0.5])) + share)
     )
     assert_exact(estimates, exact, {"drift": 1.5e-3, "mean_energy": 1.5e-3})
+    residual = estimates["energy_balance_residual"]  # recoil is all that is lost
+    assert abs(residual.value) < 3.5 * residual.standard_error
+    assert residual.standard_error < 3e-3
 
 
 def test_binary_ejecta_keep_the_momentum(seed):

@@ -8,8 +8,10 @@ from kernel.model_gases import constant_frequency, model_gas, power_law
 from swarmgauge.gas import Mixture
 from swarmgauge.gas.constants import E_CHARGE, E_MASS, TOWNSEND
 from swarmgauge.gas.process import Sharing
+from swarmgauge.swarm.plan import MEMORY, RATE_UNIT
+from swarmgauge.swarm.point_run import estimates_of
 
-from .swarms import assert_exact, swarm
+from .swarms import assert_exact, cohorts, swarm
 
 NU = 1e-13
 SHARES = {"a": 0.3, "b": 0.25, "c": 0.2, "d": 0.1499, "e": 0.1, "f": 1e-4, "g": 0.0}
@@ -81,9 +83,14 @@ def test_a_trace_never_seen_has_a_bound(seed):
     trace = model_gas(
         0.4, power_law("elastic", 3e-20), power_law("ionization", 6e-20, threshold_eV=900.0), name="trace"
     )
-    estimate = swarm(Mixture({base: 1.0, trace: 0.0}), 0.3, seed, 4)[0]["rate:trace/ionization"]
+    reducer, rows = cohorts(Mixture({base: 1.0, trace: 0.0}), 0.3, seed, 4)
+    estimate = estimates_of(reducer, rows)[0]["rate:trace/ionization"]
     assert estimate.value == 0.0
     assert math.isnan(estimate.standard_error)
-    # As if the trace had 1/64 of all events: its cross section is that of the base.
-    bound = swarm(Mixture({base: 63 / 64, trace: 1 / 64}), 0.3, seed, 4)[0]["rate:trace/ionization"].upper_bound
-    assert estimate.upper_bound == pytest.approx(bound, rel=0.05)
+    # Its cross section is that of the base, so 64 events for each of its candidates, 1/64 of all; and as many as it
+    # would have during one relaxation time at twice the threshold, for the trace ends no excursion.
+    plan = reducer.plan
+    memory = plan.memory * plan.window_time
+    events = 64.0 + 6.0 * math.sqrt(2 * 900.0) * memory / MEMORY
+    time = rows[:, reducer.layout.slices["time"]].sum()
+    assert estimate.upper_bound == pytest.approx(-math.log(0.05) * events / time * RATE_UNIT, rel=2e-3)

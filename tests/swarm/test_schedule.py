@@ -8,8 +8,9 @@ import pytest
 
 from swarm.test_point_run import same
 from swarmgauge.gas import InputError, Mixture
+from swarmgauge.swarm.cohort import CohortFailure, run_cohort
 from swarmgauge.swarm.field import Field
-from swarmgauge.swarm.point_run import PointRun
+from swarmgauge.swarm.point_run import PointRun, prepare
 from swarmgauge.swarm.schedule import PREPARE, _Work, drive, seconds_left, simulate
 
 LOOSE = {"mean_energy": 0.1}
@@ -83,6 +84,51 @@ def test_an_error_in_a_cohort_is_raised(monkeypatch):
     monkeypatch.setattr("swarmgauge.swarm.schedule.run_cohort", broken)
     with pytest.raises(MemoryError, match="no room"), ThreadPoolExecutor(2) as executor:
         drive(runs(1), executor, workers=2)
+
+
+def test_a_cohort_that_fails_makes_its_point_begin_anew_with_shorter_windows(monkeypatch):
+    long_windows = prepare(Mixture({"model-ramp": 1.0}), Field(10.0), 1).plan.window_time
+
+    def failing(plan, index):
+        if plan.window_time == long_windows and index == 7:
+            raise CohortFailure("growth")
+        return run_cohort(plan, index)
+
+    monkeypatch.setattr("swarmgauge.swarm.schedule.run_cohort", failing)
+    results = []
+    for workers in (1, 2):
+        mine = runs(1)
+        with ThreadPoolExecutor(workers) as executor:
+            drive(mine, executor, workers=workers)
+        results.append([run.result() for run in mine])
+        assert mine[0].pilot.plan.window_time == long_windows / 4
+        assert mine[0].failures == 1
+        assert mine[1].failures == 0
+    for a, b in zip(*results, strict=True):
+        same(a, b)
+        assert a.status == "done"
+    state = mine[0].state()
+    again = PointRun(mine[0].mixture, mine[0].field, seed=1, accuracy=LOOSE, state=state)
+    assert again.failures == 1
+    same(again.result(), results[0][0])
+
+
+def test_a_point_whose_cohorts_always_fail_does_not_stop_the_others(monkeypatch):
+    mine = runs(1)
+
+    def failing(plan, index):
+        if plan.field.E_over_N_Td == 10.0:
+            raise CohortFailure("extinct")
+        return run_cohort(plan, index)
+
+    monkeypatch.setattr("swarmgauge.swarm.schedule.run_cohort", failing)
+    with ThreadPoolExecutor(2) as executor:
+        drive(mine, executor, workers=2)
+    first, second = (run.result() for run in mine)
+    assert first.status == "extinct"
+    assert "a cohort failed" in first.warnings[0]
+    assert not first.estimates
+    assert second.status == "done"
 
 
 def test_the_clock_of_the_campaign(monkeypatch):

@@ -24,8 +24,8 @@ from swarmgauge.kernel.lookup import LAB_CELLS, SPEED_CELLS, speed_edges
 from swarmgauge.kernel.start import launch
 from swarmgauge.kernel.streams import cohort_start
 
-from .curves import ProcessCurve
 from .plan import Plan
+from .recoil import recoil_on_cells
 
 FLIGHTS_PER_CALL = 1e7  # a kernel call lasts some tenths of a second, so that Ctrl-C is heard
 MOST_STEPS = 10**8
@@ -59,7 +59,8 @@ class SumsLayout:
             "windows": 1,
             "rate": self.processes,
             "above_end": self.processes,
-            "recoil": self.gases,
+            "recoil": self.processes,
+            "warm_recoil": self.gases,
             "attached_energy": self.processes,
             "lab": 2 * LAB_CELLS,
             "lag": LAG_SUMS * self.lags,
@@ -175,30 +176,11 @@ def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
         row[at["above_end"].start + column] = serial_sum(np.where(above, histogram[curve.gas, :, 0], 0.0))
         if curve.process.kind == "attachment":
             row[at["attached_energy"].start + column] = serial_sum(visits * middle_energy)
-    row[at["recoil"]] = work.recoil if plan.mixture.temperature_K > 0.0 else _cold_recoil(plan, lower, upper)
+    warm = plan.mixture.temperature_K > 0.0
+    for column, curve in enumerate(plan.curves):
+        if not (warm and curve.process.kind == "elastic"):
+            given = recoil_on_cells(plan, curve, lower[curve.gas], upper[curve.gas])
+            row[at["recoil"].start + column] = serial_sum(given)
+    if warm:
+        row[at["warm_recoil"]] = work.recoil
     return row
-
-
-def _cold_recoil(plan: Plan, lower: np.ndarray, upper: np.ndarray) -> np.ndarray:
-    """Energy given to atoms at rest in elastic collisions, summed over time: 2 m M/(m + M)^2 nu w^2 (1 - <cos chi>).
-
-    The sum over the histogram is exact for a frequency linear in speed but for w^2, taken at the ends of the cells.
-    """
-    edges = speed_edges()
-    result = np.zeros(len(plan.mixture.gases))
-    for curve in plan.curves:
-        if curve.process.kind == "elastic":
-            result[curve.gas] += serial_sum(elastic_loss(plan, curve, lower[curve.gas], upper[curve.gas], edges))
-    return result
-
-
-def elastic_loss(
-    plan: Plan, curve: ProcessCurve, lower: np.ndarray, upper: np.ndarray, edges: np.ndarray
-) -> np.ndarray:
-    """Contribution of each speed cell to the recoil of a cold gas."""
-    ratio = plan.mixture.gases[curve.gas].mass_ratio
-    factor = 2.0 * ratio / (1.0 + ratio) ** 2 * (1.0 - curve.process.scattering.mean_cosine(edges**2))
-    share = plan.mixture.fractions[curve.gas]
-    return share * (
-        factor[:-1] * curve.low * lower * edges[:-1] ** 2 + factor[1:] * curve.high * upper * edges[1:] ** 2
-    )

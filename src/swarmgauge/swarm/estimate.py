@@ -15,6 +15,7 @@ class Estimate:
         the value is exact.
     samples : independent cohorts behind it.
     upper_bound : 95 % upper bound, only where a process was never seen; otherwise NaN.
+    signed : whether the bound is one of the amount of a quantity that may have either sign.
     """
 
     value: float
@@ -22,20 +23,24 @@ class Estimate:
     unit: str
     samples: int
     upper_bound: float = math.nan
+    signed: bool = False
 
     def interval(self, level: float = 0.95) -> tuple[float, float]:
         """Central confidence interval at `level` (0.68, 0.95, 0.99, ...) by Student's t with samples - 1 degrees.
 
-        Where a process was never seen: from 0 to the upper bound, whatever the level up to 0.95, NaN above.
+        Where a process was never seen: from 0 (or minus the bound, if signed) to the upper bound, whatever the level up
+        to 0.95, NaN above.
         """
         if not math.isnan(self.upper_bound):
-            return 0.0, self.upper_bound if level <= 0.95 else math.nan
+            bound = self.upper_bound if level <= 0.95 else math.nan
+            return -bound if self.signed else 0.0, bound
         reach = float(stdtrit(self.samples - 1, 0.5 + 0.5 * level)) * self.standard_error
         return self.value - reach, self.value + reach
 
     def __repr__(self) -> str:
         if not math.isnan(self.upper_bound):
-            return f"< {self.upper_bound:.2g} {self.unit} (95 %)".rstrip()
+            amount = "|x| " if self.signed else ""
+            return f"{amount}< {self.upper_bound:.2g} {self.unit} (95 %)".rstrip()
         return f"{with_error(self.value, self.standard_error)} {self.unit}".rstrip()
 
 

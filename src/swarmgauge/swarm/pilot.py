@@ -38,14 +38,18 @@ class Pilot:
     cpu_seconds: float = 0.0
 
 
-def fly_pilot(plan: Plan) -> Pilot:
+def fly_pilot(plan: Plan, failures: int = 0) -> Pilot:
     """Fly one cohort from the start distribution until two successive stretches have the same mean energy.
+
+    failures : how often a cohort of this point failed after a pilot: windows are a quarter as long for each.
 
     A stretch is one memory. All before the second of the two is cut; at least one stretch, since
     displacement histories must be full. A swarm that has not come to rest after 12 stretches and still gains energy, or
     that spends more than 0.1 % of its time above 10 keV, runs away. A swarm that dies out within a window, or outgrows
     its lanes, gets shorter windows. One that dies out thousands of times within a memory counts as extinct.
     """
+    if failures:
+        plan = _shorter(plan, 4**failures)
     for _ in range(MOST_TRIES):
         if plan.memory > MOST_MEMORY:
             return Pilot(

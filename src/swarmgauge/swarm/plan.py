@@ -38,7 +38,7 @@ LARGEST_LOSS = 1.2  # of e-foldings by attachment in a window, where memories ar
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "angles.py", "cohort.py", "pilot.py")
+_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "angles.py", "cohort.py", "recoil.py", "pilot.py")
 
 
 @dataclass(frozen=True, eq=False)

@@ -22,17 +22,21 @@ from .targets import parse_accuracy, worst
 from .two_term import TwoTerm
 
 FIRST_COHORTS = 20
+MOST_FAILURES = 3  # of cohorts after a good pilot; windows are then 64 times shorter
 LARGEST_COUNT = 1e9  # of cohorts that is told
 FEWEST_COHORTS = 4  # below these the clock cannot stop a point: no error could be stated
 LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on unmentioned
 SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, one that has not was cut
 
 
-def prepare(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = ()) -> Pilot:
-    """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor."""
+def prepare(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = (), failures: int = 0) -> Pilot:
+    """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor.
+
+    failures : as for `fly_pilot`.
+    """
     begin = time.thread_time()
     two_term = solved(mixture, field)
-    pilot = fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare))
+    pilot = fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare), failures)
     return replace(pilot, two_term=two_term, cpu_seconds=time.thread_time() - begin)
 
 
@@ -64,6 +68,7 @@ class PointRun:
         self.rare = rare_asked(mixture, field, self.targets)
         self.key = plan_key(mixture, field, seed, self.rare)
         self.pilot: Pilot | None = None
+        self.failures = 0
         self.finished = False
         self.cpu_seconds = 0.0
         self.wall_seconds = 0.0
@@ -90,6 +95,24 @@ class PointRun:
         self._two_term = pilot.two_term
         if pilot.plan is None:
             self._finish()
+
+    def fail(self, reason: str) -> None:
+        """A cohort died out or outgrew its lanes after a good pilot: begin again with shorter windows.
+
+        The cohorts at hand are dropped: those that did not fail would be a biased choice. After too many failures the
+        point is finished without a steady swarm.
+        """
+        if self.finished:
+            return
+        self.failures += 1
+        self._sums.clear()
+        self._wanted = FIRST_COHORTS
+        self._point = None
+        self.pilot = None
+        if self.failures > MOST_FAILURES:
+            outcome = "extinct" if reason == "extinct" else "runaway"
+            note = f"a cohort failed ({reason}) after {MOST_FAILURES} pilots with ever shorter windows"
+            self.set_pilot(Pilot(None, outcome, np.zeros(0), note, self._two_term))
 
     def add(self, index: int, sums: np.ndarray, cpu_seconds: float, workers: int = 1) -> None:
         """Take a cohort; when all that are wanted are there, judge, and ask for as many again if a target is missed.
@@ -166,6 +189,7 @@ class PointRun:
         state: dict[str, Any] = {
             "cpu_seconds": self.cpu_seconds,
             "wall_seconds": self.wall_seconds,
+            "failures": self.failures,
             "outcome": pilot.outcome if pilot else "",
             "note": pilot.note if pilot else "",
             "stretch_energies": pilot.stretch_energies if pilot else np.zeros(0),
@@ -191,6 +215,7 @@ class PointRun:
             return
         plan = None
         self.cpu_seconds, self.wall_seconds = state["cpu_seconds"], state["wall_seconds"]
+        self.failures = int(state["failures"])
         self._wall_seconds_before = self.wall_seconds
         if state["outcome"] == "steady":
             plan = Plan(
@@ -324,7 +349,8 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
     for place, name in enumerate(names):
         bound = bounds.get(name, math.nan)
         error = math.nan if name in bounds else float(errors[place])
-        estimates[name] = Estimate(float(values[place]), error, unit_of(name), len(rows), bound)
+        signed = name == "net_frequency_over_N"
+        estimates[name] = Estimate(float(values[place]), error, unit_of(name), len(rows), bound, signed)
     bins = (len(values) - len(names)) // 2
     f0, f1 = slice(len(names), len(names) + bins), slice(len(names) + bins, None)
     filled = int(np.flatnonzero(values[f0])[-1]) + 1  # empty bins above the fastest electron are left out

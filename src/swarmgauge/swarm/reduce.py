@@ -26,24 +26,29 @@ from swarmgauge.kernel.history import (
     PATH_ACROSS_SQUARED,
     PATH_SQUARED,
 )
-from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, SPEED_CELLS, speed_edges
+from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
+from .bin_means import bin_weights
+from .bounds import upper_bounds
 from .cohort import SumsLayout, layout_of, serial_sum
 from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
 from .higher_order import energy_diffusion, skewness_flux, skewness_source
 from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order, needs_displacements
-from .tables import LEAST_SHARE
 
 SKEWNESS_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2**2  # Q N^2, 1/(m^3 s)
 DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
-UNSEEN_EVENTS = 2.9957322735539909  # -ln 0.05: 95 % upper bound on the expected number of events where none was seen
+
+
+def lab_edges() -> np.ndarray:
+    """Edges of the bins of the distribution, speeds, sqrt(eV); shape (LAB_CELLS + 1,)."""
+    return speed_edges()[:: 1 << LAB_COARSER]
 
 
 def lab_edges_eV() -> np.ndarray:
-    """Edges of the energy distribution, eV; shape (LAB_CELLS + 1,)."""
-    return speed_edges()[:: 1 << LAB_COARSER] ** 2
+    """The same as energies, eV."""
+    return lab_edges() ** 2
 
 
 @dataclass(frozen=True)
@@ -125,9 +130,8 @@ class Reducer:
         """Mobility and diffusion of the energy flux; <v_z e> from the distribution, as f1."""
         field = self.plan.field.E_over_N_Td * TOWNSEND
         drift, diffusion_l, diffusion_t, _ = flux
-        edges = lab_edges_eV()
         lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)
-        moment = serial_sum(lab[:, :, 1] * (0.5 * (edges[:-1] + edges[1:]))) / serial_sum(lab[:, :, 0])
+        moment = serial_sum(lab[:, :, 1] * bin_weights(lab_edges(), 3, 2)) / serial_sum(lab[:, :, 0])
         result = {}
         share = np.ones(len(rows))
         if field > 0.0:
@@ -176,10 +180,7 @@ class Reducer:
             zero = np.zeros(len(rows))
             result["net_frequency_over_N"] = sums.get("ionization", zero) - sums.get("attachment", zero)
         lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)[:, :, 0]
-        edges = np.sqrt(lab_edges_eV())
-        # mean speed in a bin filled evenly in volume: 3/4 (b^4 - a^4)/(b^3 - a^3)
-        speed = 0.75 * np.diff(edges**4) / np.diff(edges**3)
-        mean_speed = serial_sum(lab * speed) / serial_sum(lab) * SPEED_1_EV
+        mean_speed = serial_sum(lab * bin_weights(lab_edges(), 2, 1)) / serial_sum(lab) * SPEED_1_EV
         result["mean_free_path_times_N"] = mean_speed / sums["collision"]
         return result
 
@@ -214,7 +215,7 @@ class Reducer:
         return [(group, MaxwellianRates(group)) for group in groups]
 
     def power(self, rows: np.ndarray, known: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
-        """Field heating and where it goes: elastic recoil, thresholds, attached electrons, new electrons.
+        """Field heating and where it goes: recoil, thresholds, attached electrons, new electrons.
 
         What superelastic collisions give is set off against it.
         """
@@ -224,19 +225,20 @@ class Reducer:
         heating = known["drift_velocity_flux"] * field  # eV m^3/s
         result = {"field_heating_over_N": heating * E_CHARGE}
         rates = self.part(rows, "rate")
-        recoil = self.part(rows, "recoil")
+        recoil, warm_recoil = self.part(rows, "recoil"), self.part(rows, "warm_recoil")
         attached = self.part(rows, "attached_energy")
         spent = np.zeros(len(rows))
         for column, curve in enumerate(self.plan.curves):
             gas = self.plan.mixture.gases[curve.gas]
             share = self.plan.mixture.fractions[curve.gas]
             if curve.process.kind == "elastic":
-                loss = recoil[:, curve.gas]
+                loss = recoil[:, column] + warm_recoil[:, curve.gas]
             elif curve.process.kind == "attachment":
                 loss = share * attached[:, column]
             else:
-                loss = share * curve.process.threshold_eV * rates[:, column]
-            fraction = loss * RATE_UNIT / heating
+                threshold = -curve.process.threshold_eV if curve.superelastic else curve.process.threshold_eV
+                loss = share * threshold * rates[:, column] + recoil[:, column]
+            fraction = (-loss if curve.superelastic else loss) * RATE_UNIT / heating
             kind = "gain" if curve.superelastic else "loss"
             result[f"{kind}_fraction:{gas.name}/{curve.process.id}"] = fraction
             spent = spent - fraction if curve.superelastic else spent + fraction
@@ -249,30 +251,19 @@ class Reducer:
         result["energy_balance_residual"] = 1.0 - spent
         return result
 
-    def upper_bounds(self, rows: np.ndarray, names: dict[str, np.ndarray]) -> dict[str, float]:
-        """95 % upper bounds of what was never seen, by name: fewer than 3 events in the time of all electrons.
+    def upper_bounds(self, rows: np.ndarray, known: dict[str, float]) -> dict[str, float]:
+        """95 % upper bounds of what was never seen, by name; known : value of every quantity.
 
-        A rate comes from all candidates of its gas; there are at least as many of them as events, and in a gas that is
-        scarce as LEAST_SHARE of all collisions.
+        The time is that of all electrons; where they are split, of as many as their weight stands for.
         """
-        mixture = self.plan.mixture
         windows, alive = (float(rows[:, self.layout.slices[name]].sum()) for name in ("windows", "alive"))
-        total_time = 0.5 * (windows * self.plan.electrons + alive) * self.plan.window_time
-        per_time = UNSEEN_EVENTS / total_time * RATE_UNIT
-        tables = self.plan.tables.collision.reshape(len(mixture.gases), SPEED_CELLS, 4)
-        all_collisions = np.maximum(np.cumsum(tables[:, :, 3], axis=0)[-1], np.finfo(float).tiny)
-        bounds: dict[str, float] = {}
-        for curve in self.plan.curves + self.plan.passive_curves:
-            gas = mixture.gases[curve.gas]
-            if not curve.high.any():  # it cannot happen: the rate is exactly 0
-                continue
-            share = float(mixture.fractions[curve.gas])
-            if share < LEAST_SHARE:
-                share = LEAST_SHARE / float((curve.high / all_collisions).max())
-            bounds[self._rate_name(curve)] = per_time / (share * mixture.body_density_m3(gas, curve.process))
-        for name in ("ionization_frequency_over_N", "attachment_frequency_over_N", "net_frequency_over_N"):
-            bounds[name] = per_time
-        return {name: bound for name, bound in bounds.items() if name in names and names[name] == 0.0}
+        full = windows * self.plan.electrons
+        electron_time = 0.5 * (full + min(alive, full)) * self.plan.window_time
+        curves = enumerate(self.plan.curves + self.plan.passive_curves)
+        names = {number: self._rate_name(curve) for number, curve in curves}
+        unseen = {number: name for number, name in names.items() if known.get(name) == 0.0}
+        bounds = upper_bounds(self.plan, electron_time, unseen)
+        return {name: bound for name, bound in bounds.items() if known.get(name) == 0.0}
 
     def families(self, rows: np.ndarray) -> tuple[float, float]:
         """Distinct ancestors, one memory ago, of a cohort's electrons, and their effective number; means over all."""

@@ -10,7 +10,7 @@ from typing import Any
 
 from swarmgauge.gas import Mixture
 
-from .cohort import run_cohort
+from .cohort import CohortFailure, run_cohort
 from .field import Field
 from .point import Point
 from .point_run import FIRST_COHORTS, PointRun, prepare
@@ -38,7 +38,7 @@ def drive(
     """
     end = None if max_minutes is None else time.monotonic() + 60.0 * max_minutes
     work = _Work(runs)
-    under_way: dict[Future, tuple[PointRun, int]] = {}
+    under_way: dict[Future, tuple[PointRun, int, int]] = {}
 
     def hand_over(run: PointRun) -> None:
         if run.finished and on_finished:
@@ -53,14 +53,16 @@ def drive(
                 for run in work.stop():
                     hand_over(run)
             while not over and len(under_way) <= workers and (piece := work.next_piece()):
-                under_way[_submitted(executor, *piece)] = piece
+                run, index = piece
+                under_way[_submitted(executor, run, index)] = (run, index, run.failures)
             if not under_way:
                 return
             done, _ = wait(under_way, timeout=1.0, return_when=FIRST_COMPLETED)
             for future in done:
-                run, index = under_way.pop(future)
+                run, index, failures = under_way.pop(future)
                 was_finished = run.finished
-                work.take(run, index, future.result(), workers)
+                if failures == run.failures:  # else of a plan that was given up
+                    work.take(run, index, _answer(future), workers)
                 if not was_finished:
                     hand_over(run)
                 if on_progress and run.cohorts > 1:
@@ -76,10 +78,18 @@ def drive(
 
 def _submitted(executor: Executor, run: PointRun, index: int) -> Future:
     if index == PREPARE:
-        return executor.submit(prepare, run.mixture, run.field, run.seed, run.rare)
+        return executor.submit(prepare, run.mixture, run.field, run.seed, run.rare, run.failures)
     assert run.pilot is not None
     assert run.pilot.plan is not None
     return executor.submit(run_cohort, run.pilot.plan, index)
+
+
+def _answer(future: Future) -> Any:
+    """What a piece of work came to; a cohort that failed is an answer too."""
+    try:
+        return future.result()
+    except CohortFailure as failure:
+        return failure
 
 
 class _Work:
@@ -121,7 +131,10 @@ class _Work:
     def take(self, run: PointRun, index: int, answer: Any, workers: int) -> None:
         """Hand a run the answer to one of its pieces. A point's clock is its share of the workers' time."""
         self._given[id(run)].discard(index)
-        if index == PREPARE:
+        if isinstance(answer, CohortFailure):
+            run.fail(str(answer))
+            self._given[id(run)].clear()
+        elif index == PREPARE:
             run.spend(answer.cpu_seconds, workers)
             run.set_pilot(answer)
         else:
