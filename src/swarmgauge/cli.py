@@ -22,7 +22,8 @@ def build_parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="swarmgauge",
         description="Electron swarms in gases: coefficients, distributions and their errors from cross sections.",
-        epilog="Exit status: 0 done, 1 failed, 2 bad input, 3 finished but a target was missed, 130 interrupted.",
+        epilog="Exit status: 0 done, 1 failed, 2 bad input, 3 finished but a target was missed or a check found an "
+        "error, 130 interrupted.",
     )
     parser.add_argument("--version", action="version", version=f"swarmgauge {__version__}")
     commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True)
@@ -30,6 +31,13 @@ def build_parser() -> argparse.ArgumentParser:
     sets = commands.add_parser("sets", help="list the cross-section sets that come with the program")
     sets.add_argument("--json", action="store_true", help="print JSON")
     sets.set_defaults(run=run_sets)
+
+    check = commands.add_parser("check", help="look for what cannot be right in cross-section sets")
+    check.add_argument("sets", metavar="SET", nargs="+", help="name of a shipped set, or path of a set file")
+    check.add_argument("--E-over-N-Td", metavar="TD", type=_field, help="also: which energies a swarm probes there")
+    check.add_argument("--out", metavar="DIR", type=Path, help="draw a figure of every set into this folder")
+    check.add_argument("--json", action="store_true", help="print JSON")
+    check.set_defaults(run=run_check)
 
     run = commands.add_parser("run", help="compute all points of a run file")
     run.add_argument("runfile", metavar="RUNFILE", help="path of a run file, or the name of a shipped one")
@@ -50,6 +58,20 @@ def run_sets(arguments: argparse.Namespace) -> int:
 
     _print([json.dumps(sets_json(), indent=1)] if arguments.json else sets_table())
     return DONE
+
+
+def run_check(arguments: argparse.Namespace) -> int:
+    """Audit sets; draw them where a folder is given."""
+    from .gauge.checking import check, checked_json, checked_lines
+
+    checked = check(arguments.sets, arguments.E_over_N_Td)
+    _print([json.dumps(checked_json(checked), indent=1)] if arguments.json else checked_lines(checked))
+    if arguments.out:
+        from .report import draw_set
+
+        paths = [path for one in checked for path in draw_set(one, arguments.out)]
+        _print([] if arguments.json else [f"drawn: {path}" for path in paths])
+    return MISSED if any(one.wrong for one in checked) else DONE
 
 
 def run_run(arguments: argparse.Namespace) -> int:
@@ -149,6 +171,13 @@ def _fail(message: str, status: int) -> int:
 def _count(text: str) -> int:
     number = int(text)
     if number < 1:
+        raise ValueError
+    return number
+
+
+def _field(text: str) -> float:
+    number = float(text)
+    if not 0.0 < number < float("inf"):
         raise ValueError
     return number
 

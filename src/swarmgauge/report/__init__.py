@@ -1,5 +1,6 @@
-"""Figures of results: the only place where matplotlib is used."""
+"""Figures of results and of sets: the only place where matplotlib is used."""
 
 from .figures import draw_figures
+from .set_figure import draw_set
 
-__all__ = ["draw_figures"]
+__all__ = ["draw_figures", "draw_set"]

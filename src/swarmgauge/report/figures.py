@@ -41,7 +41,7 @@ def draw_figures(folder: str | Path) -> list[Path]:
             "coefficients": coefficients_figure(groups[:MOST_GROUPS], f"{title}\n{_KEY}"),
             "eedf": eedf_figure(results, groups[:MOST_GROUPS], f"{title}\nBands: one standard error."),
         }
-        return [path for name, figure in figures.items() for path in _save(figure, where / name)]
+        return [path for name, figure in figures.items() for path in save(figure, where / name)]
 
 
 def _title(groups: list[Group]) -> str:
@@ -50,7 +50,7 @@ def _title(groups: list[Group]) -> str:
     return f"{gas}; {more} of them not drawn" if more > 0 else gas
 
 
-def _save(figure: Figure, path: Path) -> list[Path]:
+def save(figure: Figure, path: Path) -> list[Path]:
     """Write a figure in both forms, without date or version inside."""
     figure.draw_without_rendering()  # lays the panels out, which takes a second
     figure.set_layout_engine("none")  # and need not be done again for the second form

@@ -55,8 +55,8 @@ def check_beb(gas: Gas) -> Iterator[Finding]:
     yield Finding(
         "error" if wrong else "doubt",
         "binary-encounter-Bethe",
-        f"the sum of ionization is {ratio[worst]:.2f} times the formula at {energy[worst]:.4g} eV, {middle:.2f} times in "
-        f"the middle of {low:.0f} to {high:.0f} eV; the formula is good to some 15 % ({ORBITAL_SOURCE})."
+        f"the sum of ionization is {ratio[worst]:.2f} times the formula at {energy[worst]:.4g} eV, {middle:.2f} times "
+        f"in the middle of {low:.0f} to {high:.0f} eV; the formula is good to some 15 % ({ORBITAL_SOURCE})."
         f"{_bohr(middle)}",
         "Check unit and source of the ionization; a smaller difference may be the formula's.",
         processes[0].id,

@@ -27,8 +27,8 @@ def check_gaps(gas: Gas) -> Iterator[Finding]:
             yield Finding(
                 "doubt",
                 "gap",
-                f"the table starts at {table.start_eV:g} eV; below it the first value, {table.cross_section_m2[0]:.3g} m2, "
-                "is kept, where slow electrons feel it.",
+                f"the table starts at {table.start_eV:g} eV; below it the first value, {table.cross_section_m2[0]:.3g} "
+                "m2, is kept, where slow electrons feel it.",
                 "Add values down to 0.01 eV.",
                 process.id,
                 0.0,
@@ -86,7 +86,7 @@ def _outlier(process: Process, table: Table) -> Iterator[Finding]:
         yield Finding(
             "doubt",
             "jump",
-            f"{section[row]:.4g} m2 is {off[place]:.2g} times what the rows around it suggest ({expected[place]:.3g} m2).",
+            f"{section[row]:.4g} m2 is {off[place]:.2g} times what the rows around suggest, {expected[place]:.3g} m2.",
             "Compare the row with its source; a digit may have slipped.",
             process.id,
             float(energy[row]),

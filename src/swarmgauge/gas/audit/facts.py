@@ -1,8 +1,9 @@
 """Masses, ionization energies and first levels against published values."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 
 from ..gas import Gas
+from ..process import Process
 from .finding import Finding, acting, percent
 from .reference import (
     ATOMIC_LEVEL_EV,
@@ -20,7 +21,7 @@ from .reference import (
 _MASS_DOUBT, _MASS_ERROR = 5e-4, 0.01
 _IONIZATION_DOUBT, _IONIZATION_ERROR = 0.01, 0.1
 _LEVEL_DOUBT, _LEVEL_ERROR = 0.01, 0.1
-_NEAREST = 0.1  # a level further off than that from all excitations is missing or lumped
+_NEAR, _NEAREST = 0.02, 0.1  # a level further off than that from all excitations is missing or lumped
 _LOWEST_ION_EV, _HIGHEST_ION_EV = 3.89, 24.6  # caesium and helium
 
 
@@ -78,32 +79,35 @@ def check_first_levels(gas: Gas) -> Iterator[Finding]:
         first = excitations[0]
         known = ATOMIC_LEVEL_EV[gas.formula]
         yield from _compared(gas, first.id, first.threshold_eV, known, LEVEL_SOURCE, (_LEVEL_DOUBT, _LEVEL_ERROR))
-    for known, what, source in (
-        (VIBRATION_EV.get(gas.formula), "vibrational quantum", VIBRATION_SOURCE),
-        (ELECTRONIC_EV.get(gas.formula), "first electronic level", ELECTRONIC_SOURCE),
+    for levels, what, source in (
+        (VIBRATION_EV, "vibrational quantum", VIBRATION_SOURCE),
+        (ELECTRONIC_EV, "first electronic level", ELECTRONIC_SOURCE),
     ):
-        if known is None:
-            continue
-        nearest = min(excitations, key=lambda process: abs(process.threshold_eV - known))
-        off = abs(nearest.threshold_eV / known - 1.0)
-        if off > _NEAREST:
-            yield Finding(
-                "doubt",
-                what,
-                f"no excitation near {known:.4g} eV ({source}); the nearest is {nearest.id} at "
-                f"{nearest.threshold_eV:g} eV.",
-                "Add the process if it is missing; right if it is lumped into another.",
-                low_eV=known,
-            )
-        elif off > 2.0 * _LEVEL_DOUBT:
-            yield Finding(
-                "note",
-                what,
-                f"{nearest.threshold_eV:g} eV, published: {known:.4g} eV ({source}); {percent(off)} off.",
-                "Correct the threshold unless the process stands for several levels.",
-                nearest.id,
-                nearest.threshold_eV,
-            )
+        if gas.formula in levels:
+            yield from _near(excitations, levels[gas.formula], what, source)
+
+
+def _near(excitations: Sequence[Process], known: float, what: str, source: str) -> Iterator[Finding]:
+    """Whether a published level, eV, is among the excitations of a molecule."""
+    nearest = min(excitations, key=lambda process: abs(process.threshold_eV - known))
+    off = abs(nearest.threshold_eV / known - 1.0)
+    if off > _NEAREST:
+        yield Finding(
+            "doubt",
+            what,
+            f"none near {known:.4g} eV ({source}); nearest is {nearest.id} at {nearest.threshold_eV:g} eV.",
+            "Add the process if it is missing; right if it is lumped into another.",
+            low_eV=known,
+        )
+    elif off > _NEAR:
+        yield Finding(
+            "note",
+            what,
+            f"{nearest.threshold_eV:g} eV, published: {known:.4g} eV ({source}); {percent(off)} off.",
+            "Correct the threshold unless the process stands for several levels.",
+            nearest.id,
+            nearest.threshold_eV,
+        )
 
 
 def _compared(

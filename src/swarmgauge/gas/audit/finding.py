@@ -16,9 +16,9 @@ GRADES: tuple[Grade, ...] = ("error", "doubt", "note")
 class Finding:
     """One finding about a set.
 
-    grade : "error" (cannot be right), "doubt" (look at it before you rely on it) or "note" (worth knowing). topic : what
-    was examined. reason : what was found, with the numbers. remedy : what to do. process : id, empty for the whole set.
-    low_eV, high_eV : where it is, None where energies do not matter. row : of the table, counted from 1.
+    grade : "error" (cannot be right), "doubt" (look at it before you rely on it) or "note" (worth knowing). topic :
+    what was examined. reason : what was found, with the numbers. remedy : what to do. process : id, empty for the whole
+    set. low_eV, high_eV : where it is, None where energies do not matter. row : of the table, counted from 1.
     """
 
     grade: Grade

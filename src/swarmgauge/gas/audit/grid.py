@@ -33,8 +33,8 @@ def check_grid(gas: Gas) -> Iterator[Finding]:
 def rate_differences(process: Process, table: Table) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """How the rate changes when cubic pieces take the place of linear ones.
 
-    Returns temperatures (n,), eV, the relative change at each (n,), and the part that every interval of the table has in
-    it (n, rows - 1).
+    Returns temperatures (n,), eV, at which the rate is worth a word, the relative change at each (n,), and the part
+    that every interval of the table has in it (n, rows - 1).
     """
     temperature = _TEMPERATURES_EV
     energy, weight = _nodes(table.energy_eV)
@@ -66,9 +66,8 @@ def _coarse(process: Process, table: Table) -> Iterator[Finding]:
     yield Finding(
         "doubt" if abs(change[worst]) > _DOUBT else "note",
         _TOPIC,
-        f"linear and cubic interpolation of the same {len(table.energy_eV)} points give rates that differ by "
-        f"{percent(abs(change[worst]))} for a Maxwellian of mean energy {1.5 * temperature[worst]:.2g} eV; most of it "
-        f"comes from rows {row + 1} and {row + 2}.",
+        f"a cubic through the {len(table.energy_eV)} points instead of straight lines changes the rate by "
+        f"{percent(abs(change[worst]))} at a mean energy of {1.5 * temperature[worst]:.2g} eV (Maxwellian).",
         "Add points there if the source has them; otherwise count this as an uncertainty.",
         process.id,
         float(table.energy_eV[row]),

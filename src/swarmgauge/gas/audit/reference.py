@@ -110,7 +110,7 @@ ELECTRONIC_EV = {"N2": 6.169, "O2": 0.9773, "CO": 6.010}
 
 ONSET_SOURCE = "dissociation energy less electron affinity"
 # Least energy for which dissociative attachment can form any negative ion: D0 - EA of the lowest channel, with D0 of
-# K. P. Huber and G. Herzberg (1979) or of NIST and EA(O) 1.461, EA(H) 0.754, EA(Cl) 3.613 eV; from memory. 0: any energy.
+# K. P. Huber and G. Herzberg (1979) or of NIST and EA(O) 1.461, EA(H) 0.754, EA(Cl) 3.613 eV, from memory. 0: any.
 ATTACHMENT_ONSET_EV = {
     "H2": 3.72,
     "O2": 3.66,
@@ -166,7 +166,7 @@ ORBITALS = {
 
 
 def elements(formula: str) -> dict[str, int] | None:
-    """Elements of a formula and how many atoms of each, as {"C": 1, "O": 2}; None where it is not made of known ones."""
+    """How many atoms of each element, as {"C": 1, "O": 2}; None where a formula is not made of known elements."""
     if not re.fullmatch(r"(?:[A-Z][a-z]?[0-9]*)+", formula):
         return None
     counts: dict[str, int] = {}

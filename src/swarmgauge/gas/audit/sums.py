@@ -65,12 +65,10 @@ def _against(total: Process, parts: list[Process]) -> Iterator[Finding]:
     like_total = float(np.median(ratio)) < 1.0 + 2.0 * _SHORT and total.threshold_eV <= parts[0].threshold_eV
     worst = int(np.argmin(ratio)) if ratio.min() < 1.0 - _SHORT else int(np.argmax(ratio))
     if ratio[worst] < 1.0 - _EXCESS:
-        reason = (
-            f"is larger than the sum of the acting {total.kind} processes, which reach {percent(ratio[worst])} of it"
-        )
+        reason = f"exceeds the sum of the acting {total.kind} processes, which reach {percent(ratio[worst])} of it"
     elif like_total and ratio[worst] > 1.0 + _SHORT:
         reason = (
-            f"looks like the total of the acting {total.kind} processes, but their sum is {ratio[worst]:.3g} times it"
+            f"looks like the total of the acting {total.kind} processes, yet their sum is {ratio[worst]:.3g} times it"
         )
     else:
         return

@@ -7,7 +7,7 @@ import numpy as np
 from ..gas import Gas
 from ..laws import Table
 from ..process import Process
-from .finding import Finding, percent, tables_of
+from .finding import Finding, Grade, percent, tables_of
 
 _TOPIC = "threshold"
 _MUCH = 0.01  # of the peak: more than that below a threshold is no slip of rounding
@@ -59,9 +59,11 @@ def _late(process: Process, table: Table) -> Iterator[Finding]:
     if process.kind == "attachment" or gap < max(_LATE * threshold, _LEAST_GAP_EV):
         return
     resonant = threshold < _VIBRATIONAL_EV and begin < _FAR * threshold
-    grade = "note" if process.kind == "excitation" and (resonant or gap < _VERY_LATE * threshold) else "doubt"
+    grade: Grade = "error" if process.kind == "ionization" and gap > threshold else "doubt"
+    if process.kind == "excitation" and (resonant or gap < _VERY_LATE * threshold):
+        grade = "note"
     yield Finding(
-        "error" if process.kind == "ionization" and gap > threshold else grade,
+        grade,
         _TOPIC,
         f"the cross section begins at {begin:.4g} eV, {percent(gap / threshold) if threshold else 'far'} above the "
         f"threshold, yet an electron loses only {threshold:g} eV in such a collision.",

@@ -1,0 +1,1 @@
+"""Sets held against physics and against measurements."""
