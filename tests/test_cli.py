@@ -16,6 +16,7 @@ from swarmgauge import report
 from swarmgauge.campaign import campaign, locate
 from swarmgauge.campaign.store import ResultsFolder
 from swarmgauge.cli import build_parser, main
+from swarmgauge.gas import load_named, set_text
 
 
 @pytest.fixture
@@ -38,7 +39,7 @@ def test_help_names_every_command(capsys):
         main(["--help"])
     assert stop.value.code == 0
     text = capsys.readouterr().out
-    for command in ("sets", "run"):
+    for command in ("sets", "check", "run"):
         assert f"    {command} " in text
 
 
@@ -69,6 +70,40 @@ def test_sets_are_listed(capsys):
     assert main(["sets", "--json"]) == 0
     names = [entry["name"] for entry in json.loads(capsys.readouterr().out)]
     assert names == [line.split()[0] for line in lines[1:]]
+
+
+def test_check_of_sound_sets(capsys):
+    assert main(["check", "helium-crompton1970", "argon-yamabe1983"]) == 0
+    text, faults = capsys.readouterr()
+    assert faults == ""
+    assert text.startswith("helium-crompton1970: He, 4 processes; nothing to object\n\nargon-yamabe1983: ")
+
+
+def test_check_finds_an_error(tmp_path, capsys):
+    text = set_text(load_named("helium-crompton1970")).replace(
+        "molar_mass_g_per_mol = 4.0", "molar_mass_g_per_mol = 8.0"
+    )
+    (tmp_path / "heavy.toml").write_text(text, encoding="utf-8")
+    assert main(["check", str(tmp_path / "heavy.toml")]) == 3
+    assert "error: molar mass" in capsys.readouterr().out
+    assert main(["check", str(tmp_path / "heavy.toml"), "--json"]) == 3
+    (entry,) = json.loads(capsys.readouterr().out)
+    assert [finding["grade"] for finding in entry["findings"]] == ["error"]
+
+
+def test_check_at_a_field_and_its_figure(tmp_path, capsys):
+    assert main(["check", "model-hard-sphere", "--E-over-N-Td", "5", "--out", str(tmp_path / "figures")]) == 0
+    text = capsys.readouterr().out
+    assert "energies probed at 5 Td" in text
+    assert sorted(path.name for path in (tmp_path / "figures").iterdir()) == [
+        "model-hard-sphere.png",
+        "model-hard-sphere.svg",
+    ]
+
+
+def test_check_of_what_is_no_set(capsys):
+    assert main(["check", "heliun-crompton1970"]) == 2
+    assert "Did you mean helium-crompton1970?" in capsys.readouterr().err
 
 
 def test_run_prints_targets_first_and_the_folder_first_and_last(case, capsys):

@@ -34,7 +34,7 @@ def build_parser() -> argparse.ArgumentParser:
 
     check = commands.add_parser("check", help="look for what cannot be right in cross-section sets")
     check.add_argument("sets", metavar="SET", nargs="+", help="name of a shipped set, or path of a set file")
-    check.add_argument("--E-over-N-Td", metavar="TD", type=_field, help="also: which energies a swarm probes there")
+    check.add_argument("--E-over-N-Td", metavar="TD", type=_above_zero, help="also list the energies probed there")
     check.add_argument("--out", metavar="DIR", type=Path, help="draw a figure of every set into this folder")
     check.add_argument("--json", action="store_true", help="print JSON")
     check.set_defaults(run=run_check)
@@ -43,7 +43,7 @@ def build_parser() -> argparse.ArgumentParser:
     run.add_argument("runfile", metavar="RUNFILE", help="path of a run file, or the name of a shipped one")
     run.add_argument("--out", metavar="DIR", type=Path, help="results folder (default: beside the run file)")
     run.add_argument("--workers", metavar="N", type=_count, help="threads (default: the cores this process may use)")
-    run.add_argument("--max-minutes", metavar="M", type=_minutes, help="wall clock for the whole campaign")
+    run.add_argument("--max-minutes", metavar="M", type=_above_zero, help="wall clock for the whole campaign")
     run.add_argument("--preview", action="store_true", help="two-term values of all points, in seconds")
     run.add_argument("--dry-run", action="store_true", help="list the points and stop; nothing is written")
     run.add_argument("--quiet", action="store_true", help="print nothing but faults")
@@ -175,14 +175,7 @@ def _count(text: str) -> int:
     return number
 
 
-def _field(text: str) -> float:
-    number = float(text)
-    if not 0.0 < number < float("inf"):
-        raise ValueError
-    return number
-
-
-def _minutes(text: str) -> float:
+def _above_zero(text: str) -> float:
     number = float(text)
     if not 0.0 < number < float("inf"):
         raise ValueError

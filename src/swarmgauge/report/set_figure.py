@@ -56,6 +56,7 @@ def _figure(checked: Checked) -> Figure:
     for axes in grid.flat[len(panels) :]:
         axes.remove()
     figure.draw_without_rendering()  # labels need the final size of the panels
+    figure.set_layout_engine("none")
     for axes, processes in zip(grid.flat, panels.values(), strict=False):
         _label(axes, processes)
     return figure
@@ -154,7 +155,7 @@ def _rings(axes: Axes, process: Process, colour: str, checked: Checked) -> None:
 
 
 def _label(axes: Axes, processes: Sequence[Process]) -> None:
-    """Write each name on its curve, where it hides least; names without room are listed under the title."""
+    """Write each name along its curve, where it hides least; names without room are listed under the title."""
     energy = np.geomspace(*axes.get_xlim(), _PLACES + 2)[1:-1]
     low, high = axes.get_ylim()
     curves = [_in_pixels(axes, energy, process.cross_section(energy)) for process in processes]
@@ -185,25 +186,22 @@ def _in_pixels(axes: Axes, energy: np.ndarray, values: np.ndarray) -> np.ndarray
 def _best(
     axes: Axes, text: str, curves: list[np.ndarray], own: int, places: np.ndarray, taken: list[Bbox]
 ) -> Bbox | None:
-    """The box of a label on its curve, pixels, that covers no other label and the fewest points of other curves.
+    """The box of a label just above its curve, pixels, that covers no other label and the fewest points of curves.
 
     Among equals the highest. None where other labels are everywhere.
     """
     dots = axes.figure.dpi / 72.0
     width, height = 0.62 * _LABEL * dots * (len(text) + 1), 1.3 * _LABEL * dots
     inside = axes.bbox
+    points = np.concatenate(curves)
     best, least = None, (np.inf, np.inf)
     for place in places:
         x, y = curves[own][place]
         left = float(np.clip(x - 0.5 * width, inside.x0, inside.x1 - width))
-        box = Bbox.from_bounds(left, y - 0.5 * height, width, height)
+        box = Bbox.from_bounds(left, y + 0.2 * height, width, height)
         if any(box.overlaps(other) for other in taken):
             continue
-        hidden = sum(
-            int(((curve[:, 0] > box.x0) & (curve[:, 0] < box.x1) & (abs(curve[:, 1] - y) < height)).sum())
-            for number, curve in enumerate(curves)
-            if number != own
-        )
+        hidden = int(((points > box.min) & (points < box.max)).all(axis=1).sum())
         if (hidden, -y) < least:
             best, least = box, (hidden, -y)
     return best
