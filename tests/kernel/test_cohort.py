@@ -34,7 +34,7 @@ def test_one_compilation_serves_all_gases():
         plan = first_plan(mixture, field, 1, solved(mixture, field), electrons=64)
         CohortRun(plan, 0).windows(1, True)
         CohortRun(plan, 0).windows(2, False)
-    kernel = compiled_windows(lane_count(1024), 1, False, COMBED, False)
+    kernel = compiled_windows(lane_count(1024), 1, False, COMBED, False, False)
     assert len(kernel.signatures) == 1
 
 

@@ -6,7 +6,7 @@ from numba import njit
 from scipy import stats
 
 from swarmgauge.kernel.flight import isotropic_direction, normal_pair
-from swarmgauge.kernel.functions import log, sincos_turn
+from swarmgauge.kernel.functions import exp, log, sincos_turn
 from swarmgauge.kernel.streams import cohort_start, splitmix_words
 
 LEAST_P = 1e-4
@@ -17,6 +17,14 @@ def logs(x):
     result = np.empty(x.size)
     for i in range(x.size):
         result[i] = log(x[i])
+    return result
+
+
+@njit
+def exponentials(x):
+    result = np.empty(x.size)
+    for i in range(x.size):
+        result[i] = exp(x[i])
     return result
 
 
@@ -54,6 +62,14 @@ def test_log():
     exact = np.log(x)
     assert (abs(logs(x) - exact) <= 1e-12 * abs(exact)).all()
     assert log(1.0) == 0.0
+
+
+def test_exp():
+    x = np.concatenate([np.linspace(-690.0, 690.0, 100_001), np.linspace(-1.0, 1.0, 100_001), [0.0, -1e-300]])
+    exact = np.exp(x)
+    assert (abs(exponentials(x) - exact) <= 2e-13 * exact).all()
+    assert exp(0.0) == 1.0
+    assert exp(-1e6) == exp(-700.0) > 0.0
 
 
 def test_sine_and_cosine():

@@ -18,6 +18,7 @@ from .lookup import LAB_CELLS, SPEED_CELLS
 from .record import list_ended, list_rare, record
 from .split import renormalise, split_and_roulette
 from .streams import next_word, one_to_two
+from .tilt import tilt_scores, tilt_weights
 
 # Status of a cohort
 RUNNING, FULL, EXTINCT, STUCK = 0, 1, 2, 3
@@ -145,12 +146,29 @@ def add_lane_sums(rows, lanes, series, window):
 
 @njit(inline="always")
 def step(
-    active, alive, tables, history, work, window_time, field, measuring, lanes, lags, gases, thermal, upkeep, angular
+    active,
+    alive,
+    tables,
+    history,
+    work,
+    window_time,
+    field,
+    alpha,
+    measuring,
+    lanes,
+    lags,
+    gases,
+    thermal,
+    upkeep,
+    angular,
+    tilted,
 ):
     """One flight and event of every active electron. Returns (active, alive); alive = -1 if no lane is spare."""
     rows = work.rows
     fly(active, tables, field, rows, lanes, gases, thermal, angular)
     if measuring:
+        if tilted:
+            tilt_scores(active, alpha, rows, lanes)
         record(active, rows, work.histogram, work.lab_histogram, work.recoil, work.counts, lanes, thermal)
     born_from = alive
     rare = list_rare(active, rows, work.rare, lanes)
@@ -181,15 +199,30 @@ def end_window(alive, tables, history, extended, work, window_time, lanes, lags)
 
 @njit(inline="always")
 def windows(
-    tables, work, series, size, lags, window_time, field, measuring, max_steps, lanes, gases, thermal, upkeep, angular
+    tables,
+    work,
+    series,
+    size,
+    lags,
+    window_time,
+    field,
+    alpha,
+    measuring,
+    max_steps,
+    lanes,
+    gases,
+    thermal,
+    upkeep,
+    angular,
+    tilted,
 ):
     """Run as many windows as `series` has rows; returns the status.
 
     tables : Tables; work : Workspace, changed in place; series : (windows, SERIES_COLUMNS), overwritten.
     size : electrons at the start of every window, or their summed weight over `past_growth`; lags : windows in a
-    displacement history; window_time and field in kernel units; measuring : whether histograms and counts are taken
-    (the path and lag sums always are); max_steps : bound on the steps of one window; lanes, gases, thermal, upkeep,
-    angular : compile-time constants.
+    displacement history; window_time and field in kernel units; alpha : of the weight exp(-alpha z), if tilted;
+    measuring : whether histograms and counts are taken (the path and lag sums always are); max_steps : bound on the
+    steps of one window; lanes, gases, thermal, upkeep, angular, tilted : compile-time constants.
     After an odd number of windows the histories stand in `work.other_history`.
     """
     history, extended = work.history, work.other_history
@@ -211,6 +244,7 @@ def windows(
                 work,
                 window_time,
                 field,
+                alpha,
                 measuring,
                 lanes,
                 lags,
@@ -218,6 +252,7 @@ def windows(
                 thermal,
                 upkeep,
                 angular,
+                tilted,
             )
             steps += 1
             if alive < 0:
@@ -230,6 +265,8 @@ def windows(
         series[window, SERIES_ALIVE] = alive
         if alive == 0:
             return EXTINCT
+        if tilted:
+            tilt_weights(alive, alpha, work.rows, lanes)
         total = total_weight(alive, work.rows, lanes)
         weight = past_growth(total, size, work.population[1], work.growth, lags)
         work.population[1] += 1
@@ -249,11 +286,11 @@ def windows(
 
 
 @cache
-def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int, angular: bool):
-    """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last five."""
+def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int, angular: bool, tilted: bool):
+    """The entry kernel for its compile-time constants; takes the arguments of `windows` less the last six."""
     digest = kernel_digest()
 
-    def run_windows(tables, work, series, size, lags, window_time, field, measuring, max_steps):
+    def run_windows(tables, work, series, size, lags, window_time, field, alpha, measuring, max_steps):
         digest  # noqa: B018 - part of the cache key
         prefer_wide_vectors()
         return windows(
@@ -264,6 +301,7 @@ def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int, angular
             lags,
             window_time,
             field,
+            alpha,
             measuring,
             max_steps,
             lanes,
@@ -271,6 +309,7 @@ def compiled_windows(lanes: int, gases: int, thermal: bool, upkeep: int, angular
             thermal,
             upkeep,
             angular,
+            tilted,
         )
 
     return compiled(run_windows)

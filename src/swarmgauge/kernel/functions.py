@@ -1,4 +1,4 @@
-"""Logarithm, sine and cosine from + - * / alone.
+"""Logarithm, exponential, sine and cosine from + - * / alone.
 
 Two reasons: PyPI's llvmlite has no vector math library, so calls to libm would keep the hot loop scalar; and libm
 differs between machines in the last bit, while these give the same bits everywhere.
@@ -17,6 +17,9 @@ _TWO52_BITS = (
 )
 _LN2 = 0.6931471805599453
 _SQRT2 = 1.4142135623730951
+_LN2_HIGH = 0.693147180369123816490  # its product with a whole number below 2^20 is exact
+_LN2_LOW = 1.90821492927058770002e-10
+_LARGEST_EXPONENT = 700.0
 
 
 @njit(forceinline=True, error_model="numpy")
@@ -36,6 +39,22 @@ def log(x):
     series = 1 / 11.0 + q * (1 / 13.0 + q * (1 / 15.0))
     series = q * (1 / 3.0 + q * (1 / 5.0 + q * (1 / 7.0 + q * (1 / 9.0 + q * series))))
     return exponent * _LN2 + 2.0 * (s + s * series)
+
+
+@njit(forceinline=True, error_model="numpy")
+def exp(x):
+    """Exponential of x, cut at +-700; relative error below 1e-13.
+
+    x = k ln 2 + r with |r| < 0.35: 2^k from bits, e^r by its Taylor series of degree 11 (remainder 7e-15).
+    """
+    x = _LARGEST_EXPONENT if x > _LARGEST_EXPONENT else x
+    x = -_LARGEST_EXPONENT if x < -_LARGEST_EXPONENT else x
+    k = math.floor(x * (1.0 / _LN2) + 0.5)
+    r = (x - k * _LN2_HIGH) - k * _LN2_LOW
+    series = 1 / 40320.0 + r * (1 / 362880.0 + r * (1 / 3628800.0 + r * (1 / 39916800.0)))
+    series = 1 / 24.0 + r * (1 / 120.0 + r * (1 / 720.0 + r * (1 / 5040.0 + r * series)))
+    series = 1.0 + r * (1.0 + r * (0.5 + r * (1 / 6.0 + r * series)))
+    return series * double_of((int(k) + 1023) << 52)
 
 
 @njit(forceinline=True, error_model="numpy")

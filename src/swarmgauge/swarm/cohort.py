@@ -88,7 +88,9 @@ class CohortRun:
         self.work: Workspace = new_workspace(plan.lanes, plan.lags, len(plan.mixture.gases), len(tables.kind))
         start = cohort_start(plan.seed, plan.stream_key, index)
         launch(self.work.rows, start, plan.electrons, plan.lanes, plan.start_edges_eV, plan.start_cumulated)
-        self._kernel = compiled_windows(plan.lanes, len(plan.mixture.gases), plan.thermal, plan.upkeep, plan.angular)
+        self._kernel = compiled_windows(
+            plan.lanes, len(plan.mixture.gases), plan.thermal, plan.upkeep, plan.angular, plan.tilted
+        )
         self.work.population[0] = plan.electrons
 
     def windows(self, count: int, measuring: bool, flights_per_window: float = 0.0) -> np.ndarray:
@@ -106,6 +108,7 @@ class CohortRun:
                 plan.lags,
                 plan.window_time,
                 plan.acceleration,
+                plan.alpha,
                 measuring,
                 MOST_STEPS,
             )
@@ -132,15 +135,23 @@ class CohortRun:
 
 
 def run_cohort(plan: Plan, index: int) -> tuple[np.ndarray, float]:
-    """Sums of one cohort, (columns,), and the CPU seconds that it took. A pure function of plan and index."""
+    """Sums of one cohort, (columns,), and the CPU seconds that it took. A pure function of plan and index.
+
+    Where steady-state Townsend quantities are asked for, the sums of a tilted cohort of the same index follow.
+    """
     begin = time.thread_time()
+    sums = _flown(plan, index)
+    if plan.spatial is not None:
+        sums = np.concatenate([sums, _flown(plan.tilted_plan, index)])
+    return sums, time.thread_time() - begin
+
+
+def _flown(plan: Plan, index: int) -> np.ndarray:
     run = CohortRun(plan, index)
     if plan.relaxation_windows:
         run.windows(plan.relaxation_windows, False)
     run.clear_sums()
-    series = run.windows(plan.measured_windows, True)
-    sums = reduced(plan, run.work, series)
-    return sums, time.thread_time() - begin
+    return reduced(plan, run.work, run.windows(plan.measured_windows, True))
 
 
 def serial_sum(values: np.ndarray) -> np.ndarray:
@@ -149,7 +160,7 @@ def serial_sum(values: np.ndarray) -> np.ndarray:
 
 
 def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
-    """The row of sums of a cohort; see SumsLayout."""
+    """The row of sums of a cohort; see SumsLayout. In a tilted cohort the time is that of the candidates, tilted."""
     layout = layout_of(plan)
     row = np.zeros(layout.columns)
     at = layout.slices
@@ -161,6 +172,8 @@ def reduced(plan: Plan, work: Workspace, series: np.ndarray) -> np.ndarray:
     row[at["point"]] = work.point_sums
     row[at["flights"]] = work.counts
     row[at["lab"]] = work.lab_histogram
+    if plan.tilted:
+        row[at["time"]] = serial_sum(work.lab_histogram[::2])
     row[at["lag"]] = work.lag_sums
     histogram = work.histogram.reshape(len(plan.mixture.gases), SPEED_CELLS, 2)
     upper = histogram[:, :, 1]

@@ -28,6 +28,7 @@ class Pilot:
     plan : with its windows set, or None where there is no steady swarm; outcome : "steady", "runaway" or "extinct".
     stretch_energies : (n,), eV, mean energy of successive stretches of one memory each. note : how the cut was decided.
     two_term : the solution that the plan was made from, where it is at hand. cpu_seconds : what it took.
+    spatial_note : how the spatial growth was found, or why not; empty where it is not wanted.
     """
 
     plan: Plan | None
@@ -36,6 +37,7 @@ class Pilot:
     note: str
     two_term: TwoTerm | None = None
     cpu_seconds: float = 0.0
+    spatial_note: str = ""
 
 
 def fly_pilot(plan: Plan, failures: int = 0) -> Pilot:

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass, replace
 from functools import cached_property
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 
@@ -38,7 +39,21 @@ LARGEST_LOSS = 1.2  # of e-foldings by attachment in a window, where memories ar
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = ("plan.py", "rare.py", "curves.py", "tables.py", "angles.py", "cohort.py", "recoil.py", "pilot.py")
+_SOURCES = tuple(
+    f"{name}.py" for name in ("plan", "rare", "curves", "tables", "angles", "cohort", "recoil", "pilot", "spatial")
+)
+
+
+@dataclass(frozen=True)
+class SpatialGrowth:
+    """The trial of a steady-state Townsend swarm, kernel units.
+
+    alpha : spatial growth, near its root. lever : 1 / alpha, by which values at alpha are moved to the root along the
+    line from alpha = 0; 0 where alpha itself is near 0.
+    """
+
+    alpha: float
+    lever: float
 
 
 @dataclass(frozen=True, eq=False)
@@ -51,6 +66,8 @@ class Plan:
     relaxation_windows, measured_windows : dropped and used windows of a cohort.
     rare, target_weight : processes for which electrons are split, and the weights, (ENERGY_CELLS,); () and None else.
     coupled_key : key of the random streams that coupled plans share; empty for a plan that stands alone.
+    spatial : where steady-state Townsend quantities are wanted; cohorts then have a tilted twin. tilted, alpha :
+    whether this is the plan of that twin, and its weight exp(-alpha z).
     """
 
     mixture: Mixture
@@ -68,6 +85,9 @@ class Plan:
     target_weight: np.ndarray | None = None
     coupled_key: str = ""
     memory_windows: int = 0
+    spatial: SpatialGrowth | None = None
+    tilted: bool = False
+    alpha: float = 0.0
 
     @property
     def memory(self) -> int:
@@ -117,6 +137,11 @@ class Plan:
         return self.mixture.temperature_K > 0.0 or bool(self.coupled_key)
 
     @property
+    def population_changes(self) -> bool:
+        """Whether electrons are born or lost."""
+        return any(curve.process.kind in ("ionization", "attachment") for curve in self.curves)
+
+    @property
     def angular(self) -> bool:
         """Whether any acting process scatters, or ejects electrons, other than isotropically."""
         return any(has_angular_law(curve) for curve in self.curves)
@@ -130,7 +155,25 @@ class Plan:
 
     def with_windows(self, relaxation: int, measured: int) -> "Plan":
         """The same with a relaxation cut and a length; keeps what has been computed."""
-        plan = replace(self, relaxation_windows=relaxation, measured_windows=measured)
+        return self._with(relaxation_windows=relaxation, measured_windows=measured)
+
+    def with_spatial(self, spatial: SpatialGrowth | None) -> "Plan":
+        """The same with a tilted twin."""
+        return self._with(spatial=spatial)
+
+    def tilted_by(self, alpha: float) -> "Plan":
+        """The plan of a cohort whose electrons weigh exp(-alpha z)."""
+        return self._with(spatial=None, tilted=True, alpha=alpha)
+
+    @cached_property
+    def tilted_plan(self) -> "Plan":
+        """The plan of the tilted twin."""
+        assert self.spatial is not None
+        return self.tilted_by(self.spatial.alpha)
+
+    def _with(self, **changes: Any) -> "Plan":
+        """A changed copy that keeps what has been computed and does not depend on the changes."""
+        plan = replace(self, **changes)
         plan.__dict__.update(
             {k: v for k, v in self.__dict__.items() if k in ("curves", "passive_curves", "tables", "stream_key")}
         )
@@ -199,8 +242,11 @@ def start_distribution(two_term: TwoTerm) -> tuple[np.ndarray, np.ndarray]:
     return np.ldexp(np.round(mantissa * 2.0**START_BITS) / 2.0**START_BITS, exponent), rounded
 
 
-def plan_key(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = ()) -> str:
-    """Hash of tables, conditions, seed, split processes, numerical parameters and kernel version: 32 hex digits."""
+def plan_key(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = (), spatial: bool = False) -> str:
+    """Hash of tables, conditions, seed, split processes, numerical parameters and kernel version: 32 hex digits.
+
+    spatial : whether cohorts have a tilted twin.
+    """
     folder = Path(__file__).parent
     method = hashlib.sha256(b"".join((folder / name).read_bytes() for name in _SOURCES)).hexdigest()
     return _hash(
@@ -209,6 +255,7 @@ def plan_key(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = 
             "field": _field(field),
             "seed": seed,
             "rare": list(rare),
+            "spatial": spatial,
             "method": method,
             "kernel": kernel_digest(),
         }

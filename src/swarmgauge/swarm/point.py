@@ -68,6 +68,7 @@ class Point:
     deviations in the order of the estimates; sums of their products over cohorts are covariances.
     ancestors, effective_size : electrons of one memory ago from which those of a cohort descend, and their effective
     number W^2 / sum W_a^2; means over the cohorts. The bias of a finite cohort is of the order of its inverse.
+    sst_eedf : energy distribution of the steady-state Townsend swarm, where it was asked for.
     """
 
     conditions: Conditions
@@ -86,6 +87,7 @@ class Point:
     ancestors: float = float("nan")
     effective_size: float = float("nan")
     above_tables: dict[str, float] = field(default_factory=dict)
+    sst_eedf: EnergyDistribution | None = None
 
     def __getitem__(self, name: str) -> Estimate:
         return self.estimates[name]

@@ -13,11 +13,12 @@ from swarmgauge.gas import Mixture
 from .estimate import Estimate, jackknife
 from .field import Field
 from .pilot import Pilot, fly_pilot
-from .plan import Plan, first_plan, plan_key, solved
+from .plan import Plan, SpatialGrowth, first_plan, plan_key, solved
 from .point import Conditions, EnergyDistribution, Point, TargetStatus
 from .quantities import unit_of
 from .rare import rare_asked
 from .reduce import Reducer, lab_edges_eV
+from .spatial import all_bounds, all_quantities, find_growth, spatial_asked, tilted_part
 from .targets import parse_accuracy, worst
 from .two_term import TwoTerm
 
@@ -29,20 +30,29 @@ LARGEST_TABLE_SHARE = 1e-4  # of the time above the end of a table that goes on 
 SMALL_END = 0.1  # a table that has fallen to this part of its peak has ended, one that has not was cut
 
 
-def prepare(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = (), failures: int = 0) -> Pilot:
+def prepare(
+    mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = (), failures: int = 0, spatial: bool = False
+) -> Pilot:
     """Two-term solution and pilot of a point; some tenths of a second, so it is work for the executor.
 
-    failures : as for `fly_pilot`.
+    failures : as for `fly_pilot`. spatial : whether the spatial growth is wanted too.
     """
     begin = time.thread_time()
     two_term = solved(mixture, field)
     pilot = fly_pilot(first_plan(mixture, field, seed, two_term, rare=rare), failures)
+    if spatial and pilot.plan is not None:
+        growth, note = find_growth(pilot.plan, two_term.values)
+        pilot = replace(pilot, plan=pilot.plan.with_spatial(growth), spatial_note=note)
     return replace(pilot, two_term=two_term, cpu_seconds=time.thread_time() - begin)
 
 
 def point_key(mixture: Mixture, field: Field, seed: int, accuracy: Mapping[str, Any] | None = None) -> str:
-    """The key of the point file: 32 hexadecimal digits; accuracy matters only where it asks for rare processes."""
-    return plan_key(mixture, field, seed, rare_asked(mixture, field, parse_accuracy(accuracy)))
+    """The key of the point file: 32 hexadecimal digits.
+
+    Accuracy matters only where it asks for rare processes or for the steady-state Townsend swarm.
+    """
+    targets = parse_accuracy(accuracy)
+    return plan_key(mixture, field, seed, rare_asked(mixture, field, targets), spatial_asked(mixture, field, targets))
 
 
 class PointRun:
@@ -66,7 +76,8 @@ class PointRun:
         self.targets = parse_accuracy(accuracy)
         self.max_minutes = max_minutes
         self.rare = rare_asked(mixture, field, self.targets)
-        self.key = plan_key(mixture, field, seed, self.rare)
+        self.spatial = spatial_asked(mixture, field, self.targets)
+        self.key = plan_key(mixture, field, seed, self.rare, self.spatial)
         self.pilot: Pilot | None = None
         self.failures = 0
         self.finished = False
@@ -193,6 +204,7 @@ class PointRun:
             "outcome": pilot.outcome if pilot else "",
             "note": pilot.note if pilot else "",
             "stretch_energies": pilot.stretch_energies if pilot else np.zeros(0),
+            "spatial_note": pilot.spatial_note if pilot else "",
         }
         if pilot and pilot.plan:
             plan = pilot.plan
@@ -206,6 +218,7 @@ class PointRun:
                 "start_edges_eV": plan.start_edges_eV,
                 "start_cumulated": plan.start_cumulated,
                 **({} if plan.target_weight is None else {"target_weight": plan.target_weight}),
+                **({} if plan.spatial is None else {"alpha": plan.spatial.alpha, "lever": plan.spatial.lever}),
                 "sums": np.array([self._sums[index] for index in range(count)]),
             }
         return state
@@ -231,10 +244,19 @@ class PointRun:
                 int(state["measured_windows"]),
                 rare=self.rare,
                 target_weight=state.get("target_weight"),
-                memory_windows=int(state.get("memory_windows", 0)),
+                memory_windows=int(state["memory_windows"]),
+                spatial=SpatialGrowth(state["alpha"], state["lever"]) if "alpha" in state else None,
             )
             self._sums = dict(enumerate(state["sums"]))
-        self.set_pilot(Pilot(plan, state["outcome"], state["stretch_energies"], state["note"]))
+        self.set_pilot(
+            Pilot(
+                plan,
+                state["outcome"],
+                state["stretch_energies"],
+                state["note"],
+                spatial_note=state["spatial_note"],
+            )
+        )
         if plan is None:
             return
         while self._wanted < len(self._sums):
@@ -260,6 +282,7 @@ class PointRun:
         reducer = Reducer(self.pilot.plan)
         rows = np.array([self._sums[index] for index in range(self.cohorts)])
         estimates, eedf, deviations = estimates_of(reducer, rows)
+        spatial = reducer.plan.spatial is not None
         judged = worst(self.targets, estimates, self.field.E_over_N_Td)
         name, excess = max(((n, e) for n, (_, e) in judged.items()), key=lambda pair: pair[1], default=("", 0.0))
         status = "done" if excess <= 1.0 else ("target missed" if self.finished else "interrupted")
@@ -269,6 +292,7 @@ class PointRun:
             conditions=Conditions(self.mixture, self.field, self.seed),
             estimates=estimates,
             eedf=eedf,
+            sst_eedf=energy_distribution(*tilted_part(reducer, rows)) if spatial else None,
             two_term=self._two_term.values,
             targets={n: TargetStatus(str(target), e <= 1.0, e) for n, (target, e) in judged.items()},
             warnings=self._warnings(above),
@@ -286,6 +310,8 @@ class PointRun:
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
         lines = []
+        if self.spatial and self.pilot and self.pilot.plan and self.pilot.plan.spatial is None:
+            lines.append(f"no steady-state Townsend coefficients: {self.pilot.spatial_note}")
         if self.pilot and self.pilot.plan and not self.pilot.plan.follows_memory:
             lines.append(
                 "attachment is so strong that displacements cannot be followed long enough: no diffusion and no bulk "
@@ -335,26 +361,25 @@ class PointRun:
 
 def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate], EnergyDistribution, np.ndarray]:
     """Estimates, energy distribution and jackknife deviations from the sums of cohorts, (cohorts, columns)."""
-    names: list[str] = list(reducer.quantities(rows[:1]))
-
-    def everything(sums: np.ndarray) -> np.ndarray:
-        return np.concatenate(
-            [np.stack(list(reducer.quantities(sums).values()), axis=1), *reducer.distribution(sums)], axis=1
-        )
-
-    values, errors, deviations = jackknife(everything, rows)
-    known = dict(zip(names, values, strict=False))
-    bounds = reducer.upper_bounds(rows, known)
+    names = list(all_quantities(reducer, rows[:1]))
+    values, errors, deviations = jackknife(
+        lambda sums: np.stack(list(all_quantities(reducer, sums).values()), axis=1), rows
+    )
+    known = dict(zip(names, values.tolist(), strict=True))
+    bounds = all_bounds(reducer, rows, known)
     estimates = {}
     for place, name in enumerate(names):
         bound = bounds.get(name, math.nan)
         error = math.nan if name in bounds else float(errors[place])
-        signed = name == "net_frequency_over_N"
-        estimates[name] = Estimate(float(values[place]), error, unit_of(name), len(rows), bound, signed)
-    bins = (len(values) - len(names)) // 2
-    f0, f1 = slice(len(names), len(names) + bins), slice(len(names) + bins, None)
-    filled = int(np.flatnonzero(values[f0])[-1]) + 1  # empty bins above the fastest electron are left out
-    eedf = EnergyDistribution(
-        lab_edges_eV()[: filled + 1], values[f0][:filled], errors[f0][:filled], values[f1][:filled], errors[f1][:filled]
-    )
-    return estimates, eedf, deviations[:, : len(names)]
+        signed = name in ("net_frequency_over_N", "townsend_effective_over_N")
+        estimates[name] = Estimate(known[name], error, unit_of(name), len(rows), bound, signed)
+    return estimates, energy_distribution(reducer, rows), deviations
+
+
+def energy_distribution(reducer: Reducer, rows: np.ndarray) -> EnergyDistribution:
+    """The energy distribution with its errors; empty bins above the fastest electron are left out."""
+    values, errors, _ = jackknife(lambda sums: np.concatenate(reducer.distribution(sums), axis=1), rows)
+    bins = len(values) // 2
+    filled = int(np.flatnonzero(values[:bins])[-1]) + 1
+    f0, f1 = slice(0, filled), slice(bins, bins + filled)
+    return EnergyDistribution(lab_edges_eV()[: filled + 1], values[f0], errors[f0], values[f1], errors[f1])

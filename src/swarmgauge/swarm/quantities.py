@@ -4,6 +4,7 @@ _VELOCITY = "m/s"
 _RATE = "m^3/s"
 _LINEAR = "1/(m s)"
 _MOBILITY = "1/(m V s)"
+_AREA = "m^2"
 
 # Name to unit, in the order of output. A name that ends in ":" stands for one quantity per process, <set>/<process>.
 UNITS = {
@@ -41,6 +42,14 @@ UNITS = {
     "energy_balance_residual": "1",
     "loss_fraction:": "1",
     "gain_fraction:": "1",
+    "townsend_alpha_over_N": _AREA,
+    "townsend_eta_over_N": _AREA,
+    "townsend_effective_over_N": _AREA,
+    "sst_mean_energy": "eV",
+    "sst_drift_velocity": _VELOCITY,
+    "sst_rate:": _RATE,
+    "sst_rate3:": "m^6/s",
+    "sst_superelastic_rate:": _RATE,
 }
 KNOWN_PATTERNS = [name + "*" if name.endswith(":") else name for name in UNITS]
 _ORDER = {name: place for place, name in enumerate(UNITS)}
@@ -59,6 +68,11 @@ def unit_of(name: str) -> str:
 def needs_displacements(name: str) -> bool:
     """Whether a quantity rests on the ways of electrons and their ancestors, not on their velocities alone."""
     return name.endswith("_bulk") or any(word in name for word in ("diffusion_", "characteristic_energy_", "skewness_"))
+
+
+def is_spatial(name: str) -> bool:
+    """Whether a quantity belongs to the steady-state Townsend swarm."""
+    return name.startswith(("townsend_", "sst_"))
 
 
 def in_order(names) -> list[str]:

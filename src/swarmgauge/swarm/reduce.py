@@ -1,5 +1,6 @@
 """From sums of cohorts to coefficients: the formulas, each a function of the mean sums."""
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -106,7 +107,7 @@ class Reducer:
         growth = rate * self.plan.window_time
         skewness = skewness_flux(lags, point, time, mean_z, drift, diffusion_l, growth)
         bulk = flux = (drift, diffusion_l, diffusion_t, skewness)
-        if self._population_changes():
+        if self.plan.population_changes:
             bulk = (*self._bulk(lag, point, *flux[:3]), skewness + skewness_source(lag, point, rate))
         energy = self.part(rows, "energy")[:, 0]
         result = {"mean_energy": energy, **self._energy_transport(rows, lag, point, energy, flux)}
@@ -125,6 +126,12 @@ class Reducer:
             result[f"characteristic_energy_T_{kind}"] = dt * DIFFUSION_UNIT / mobility
             result[f"characteristic_energy_L_{kind}"] = dl * DIFFUSION_UNIT / mobility
         return result
+
+    def local_moments(self, rows: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """Mean energy and mean v_z, kernel units, from the distribution: for swarms that have no other sums."""
+        lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)
+        total = serial_sum(lab[:, :, 0])
+        return serial_sum(lab[:, :, 0] * bin_weights(lab_edges(), 2, 2)) / total, serial_sum(lab[:, :, 1]) / total
 
     def _energy_transport(self, rows, lag, point, energy, flux) -> dict[str, np.ndarray]:
         """Mobility and diffusion of the energy flux; <v_z e> from the distribution, as f1."""
@@ -156,9 +163,6 @@ class Reducer:
             diffusion_t + 0.25 * (across_rate - across * rate),
         )
 
-    def _population_changes(self) -> bool:
-        return any(curve.process.kind in ("ionization", "attachment") for curve in self.plan.curves)
-
     def rates(self, rows: np.ndarray) -> dict[str, np.ndarray]:
         """Rate of every process per density of its gas, in whatever level, and the frequencies of the mixture."""
         mixture = self.plan.mixture
@@ -176,7 +180,7 @@ class Reducer:
         for kind in ("ionization", "attachment"):
             if kind in sums:
                 result[f"{kind}_frequency_over_N"] = sums[kind]
-        if self._population_changes():
+        if self.plan.population_changes:
             zero = np.zeros(len(rows))
             result["net_frequency_over_N"] = sums.get("ionization", zero) - sums.get("attachment", zero)
         lab = rows[:, self.layout.slices["lab"]].reshape(len(rows), LAB_CELLS, 2)[:, :, 0]
@@ -243,7 +247,7 @@ class Reducer:
             result[f"{kind}_fraction:{gas.name}/{curve.process.id}"] = fraction
             spent = spent - fraction if curve.superelastic else spent + fraction
         lost = spent
-        if self._population_changes():
+        if self.plan.population_changes:
             fraction = known["net_frequency_over_N"] * known["mean_energy"] / heating
             result["loss_fraction:population_change"] = fraction
             spent = spent + fraction
@@ -251,7 +255,7 @@ class Reducer:
         result["energy_balance_residual"] = 1.0 - spent
         return result
 
-    def upper_bounds(self, rows: np.ndarray, known: dict[str, float]) -> dict[str, float]:
+    def upper_bounds(self, rows: np.ndarray, known: Mapping[str, float]) -> dict[str, float]:
         """95 % upper bounds of what was never seen, by name; known : value of every quantity.
 
         The time is that of all electrons; where they are split, of as many as their weight stands for.
@@ -263,7 +267,10 @@ class Reducer:
         names = {number: self._rate_name(curve) for number, curve in curves}
         unseen = {number: name for number, name in names.items() if known.get(name) == 0.0}
         bounds = upper_bounds(self.plan, electron_time, unseen)
-        return {name: bound for name, bound in bounds.items() if known.get(name) == 0.0}
+        bounds = {name: bound for name, bound in bounds.items() if known.get(name) == 0.0}
+        if any(known.get(f"{kind}_frequency_over_N", 0.0) > 0.0 for kind in ("ionization", "attachment")):
+            bounds.pop("net_frequency_over_N", None)  # seen, and in balance to the last bit
+        return bounds
 
     def families(self, rows: np.ndarray) -> tuple[float, float]:
         """Distinct ancestors, one memory ago, of a cohort's electrons, and their effective number; means over all."""

@@ -78,7 +78,7 @@ def drive(
 
 def _submitted(executor: Executor, run: PointRun, index: int) -> Future:
     if index == PREPARE:
-        return executor.submit(prepare, run.mixture, run.field, run.seed, run.rare, run.failures)
+        return executor.submit(prepare, run.mixture, run.field, run.seed, run.rare, run.failures, run.spatial)
     assert run.pilot is not None
     assert run.pilot.plan is not None
     return executor.submit(run_cohort, run.pilot.plan, index)

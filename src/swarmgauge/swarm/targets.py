@@ -64,7 +64,8 @@ def parse_accuracy(accuracy: Mapping[str, Any] | None) -> tuple[Target, ...]:
 
 def _target(name: str, wanted: Any) -> Target:
     if not any(fnmatchcase(known, name) or fnmatchcase(name, known) for known in KNOWN_PATTERNS):
-        near = difflib.get_close_matches(name, KNOWN_PATTERNS, n=1, cutoff=0.0)
+        longer = [known for known in KNOWN_PATTERNS if known.startswith(name)]
+        near = longer or difflib.get_close_matches(name, KNOWN_PATTERNS, n=1, cutoff=0.0)
         raise InputError(f'accuracy "{name}": no such quantity. The nearest is "{near[0]}".')
     fields = dict(wanted) if isinstance(wanted, Mapping) else {"rel": wanted}
     unknown = [key for key in fields if key not in _KEYS]
