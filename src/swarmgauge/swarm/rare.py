@@ -46,8 +46,11 @@ def rare_processes(
     return tuple(sorted(names))
 
 
-def _rate_quantities(mixture: Mixture) -> list[tuple[Gas, Process, tuple[str, str]]]:
-    """Every process with the quantities that hang on it: its rate and the frequency of its kind."""
+_TOWNSEND = {"ionization": ("townsend_alpha_over_N",), "attachment": ("townsend_eta_over_N",)}
+
+
+def _rate_quantities(mixture: Mixture) -> list[tuple[Gas, Process, tuple[str, ...]]]:
+    """Every process with the quantities that hang on it: its rate, and frequency and growth of its kind."""
     return [
         (
             gas,
@@ -55,6 +58,7 @@ def _rate_quantities(mixture: Mixture) -> list[tuple[Gas, Process, tuple[str, st
             (
                 f"rate{'' if process.third_body is None else '3'}:{gas.name}/{process.id}",
                 f"{process.kind}_frequency_over_N",
+                *_TOWNSEND.get(process.kind, ()),
             ),
         )
         for gas in mixture.gases
