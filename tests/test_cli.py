@@ -224,7 +224,10 @@ BAD = {
     "no file": (["run", "none.toml"], "none.toml: there is no such file and no shipped run of this name."),
     "misspelt name": (["run", "ozon-feed"], "Did you mean ozone-feed?"),
     "folder for file": (["run", "/"], "there is no such file"),
-    "bad key": (["run", "bad.toml"], "bad.toml, fields: unknown key. Known keys: title, seed, gas, field, accuracy."),
+    "bad key": (
+        ["run", "bad.toml"],
+        "bad.toml, fields: unknown key. Known keys: title, seed, gas, field, accuracy, measured.",
+    ),
 }
 
 

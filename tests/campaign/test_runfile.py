@@ -143,7 +143,7 @@ FAULTS = {
     ),
     "unknown section": (
         GAS + FIELD + "[acuracy]\n",
-        "acuracy: unknown key. Known keys: title, seed, gas, field, accuracy. Did you mean accuracy?",
+        "acuracy: unknown key. Known keys: title, seed, gas, field, accuracy, measured. Did you mean accuracy?",
     ),
     "section is a number": ("gas = 3\n" + FIELD, "[gas] = 3: Give a section with its keys."),
     "text for number": (GAS.replace("= 0", '= "warm"') + FIELD, '[gas] temperature_K = "warm": Give a number.'),
@@ -178,9 +178,22 @@ FAULTS = {
         GAS + "[field]\nE_over_N_Td = { from = 1, per_decade = 4 }",
         "[field] E_over_N_Td, to is missing. Add it, for example to = 500.",
     ),
-    "measured": (
+    "word for fields": (
+        GAS + '[field]\nE_over_N_Td = "all"',
+        '[field] E_over_N_Td = "all": Give a list of fields, a sweep, or "measured" for those of [measured] files.',
+    ),
+    "measured fields of nothing": (
         GAS + '[field]\nE_over_N_Td = "measured"',
-        '[field] E_over_N_Td = "measured": not available in this version. Give a list of fields.',
+        '[field] E_over_N_Td = "measured": there is no section [measured]. Add it, with files.',
+    ),
+    "measured in another gas": (
+        GAS + '[field]\nE_over_N_Td = "measured"\n[measured]\nfiles = ["helium"]',
+        '[field] E_over_N_Td = "measured": nothing was measured in 1 argon-yamabe1983; the files hold He. '
+        "Give a list of fields, or other files.",
+    ),
+    "no measured files": (
+        GAS + FIELD + "[measured]\nfiles = []",
+        "[measured] files = []: Give at least one entry.",
     ),
     "magnetic field": (
         GAS + FIELD + "B_over_N_Hx = [0, 100]",
@@ -319,7 +332,7 @@ def test_unreadable_files(tmp_path):
 def test_schema_knows_every_key_of_the_file():
     schema = run_file_schema()
     json.dumps(schema)
-    assert set(schema["properties"]) == {"title", "seed", "gas", "field", "accuracy"}
+    assert set(schema["properties"]) == {"title", "seed", "gas", "field", "accuracy", "measured"}
     keys = {name: set(part["properties"]) for name, part in schema["$defs"].items()}
     assert keys["Sweep"] == {"from", "to", "per_decade"}
     assert keys["GasSection"] == {

@@ -13,8 +13,9 @@ from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.point_run import PointRun, point_key
 from swarmgauge.swarm.schedule import drive, seconds_left
 
+from .measured import measured_csv
 from .provenance import provenance
-from .results import COEFFICIENTS, DISTRIBUTIONS, PROVENANCE, coefficients_csv, distributions_csv
+from .results import COEFFICIENTS, DISTRIBUTIONS, MEASURED, PROVENANCE, coefficients_csv, distributions_csv
 from .runfile import RunFile
 from .store import ResultsFolder
 
@@ -156,6 +157,8 @@ def _write_tables(store: ResultsFolder, run_file: RunFile, points: dict[str, Poi
         COEFFICIENTS: coefficients_csv(points.items()),
         DISTRIBUTIONS: distributions_csv(points.items()),
     }
+    if run_file.measured is not None:
+        files[MEASURED] = measured_csv(run_file.measured)
     for name, text in files.items():
         store.write(name, text)
     origin = provenance(run_file, points.items(), files, wall_seconds)

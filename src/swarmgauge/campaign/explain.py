@@ -6,13 +6,14 @@ from pydantic import BaseModel, ValidationError
 
 from swarmgauge.gas.errors import suggestion
 
-from .runfile_model import AccuracySection, FieldSection, GasSection, RunFileModel, Sweep
+from .runfile_model import AccuracySection, FieldSection, GasSection, MeasuredSection, RunFileModel, Sweep
 
 _MODELS: dict[tuple, type[BaseModel]] = {
     (): RunFileModel,
     ("gas",): GasSection,
     ("field",): FieldSection,
     ("accuracy",): AccuracySection,
+    ("measured",): MeasuredSection,
     ("field", "E_over_N_Td"): Sweep,
 }
 _REMEDIES = {
@@ -86,7 +87,7 @@ def known_keys(location: tuple) -> dict[str, Any]:
 
 
 def _without_tags(location: tuple) -> tuple:
-    if location[:2] == ("field", "E_over_N_Td") and location[2:3] in (("values",), ("sweep",)):
+    if location[:2] == ("field", "E_over_N_Td") and location[2:3] in (("values",), ("sweep",), ("measured",)):
         return location[:2] + location[3:]
     return location
 

@@ -1,19 +1,11 @@
 """Where a run file stands, and where its results go."""
 
-from functools import cache
 from pathlib import Path
 
 from swarmgauge.gas.errors import suggestion
 
 from .runfile import RunFileError
-
-
-@cache
-def runs_folder() -> Path:
-    """The folder of shipped run files: in an installed copy inside the package, in a checkout runs/ at its top."""
-    package = Path(__file__).resolve().parents[1]
-    installed = package / "shipped" / "runs"
-    return installed if installed.is_dir() else package.parents[1] / "runs"
+from .shipped import runs_folder
 
 
 def shipped_runs() -> dict[str, Path]:

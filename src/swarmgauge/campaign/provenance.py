@@ -15,6 +15,7 @@ from swarmgauge.gas import Gas, Mixture
 from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.targets import DEFAULT_ACCURACY
 
+from .composition import parts_of
 from .laws import special_laws
 from .results import checksum
 from .runfile import RunFile
@@ -52,6 +53,7 @@ def provenance(
         "run_file": {"name": run_file.path.name, "sha256": checksum(run_file.text)},
         "parameters": _parameters(run_file),
         "sets": {gas.name: _set_hash(gas) for gas in _gases(run_file)},
+        "mixtures": {mixture.describe(): _composition(mixture) for mixture in _mixtures(run_file)},
         "laws": list(dict.fromkeys(line for mixture in _mixtures(run_file) for line in special_laws(mixture))),
         "computer": {"cpu": cpu_model(), "system": f"{platform.system()} {platform.machine()}"},
         "flags": {name: os.environ[name] for name in _FLAGS if name in os.environ},
@@ -77,6 +79,8 @@ def _parameters(run_file: RunFile) -> dict[str, Any]:
     parameters = dict(run_file.parameters)
     fractions = {repr(_fractions(mixture)): _fractions(mixture) for mixture in _mixtures(run_file)}
     parameters["gas"] = {**parameters["gas"], "fractions": list(fractions.values())}
+    if parameters["measured"] and parameters["measured"]["files"]:
+        parameters["measured"] = {"files": [Path(name).name for name in parameters["measured"]["files"]]}
     if not run_file.accuracy:
         parameters["accuracy"] = {**parameters["accuracy"], **DEFAULT_ACCURACY}
     return parameters
@@ -92,6 +96,12 @@ def _gases(run_file: RunFile) -> list[Gas]:
 
 def _fractions(mixture: Mixture) -> dict[str, float]:
     return {gas.name: float(fraction) for gas, fraction in zip(mixture.gases, mixture.fractions, strict=True)}
+
+
+def _composition(mixture: Mixture) -> dict[str, Any]:
+    """What a measurement must have in common with a mixture."""
+    bodies = [process.third_body for gas in mixture.gases for process in mixture.acting(gas)]
+    return {"parts": parts_of(mixture), "three_body": any(body is not None for body in bodies)}
 
 
 def _rounded(value: float) -> float | None:

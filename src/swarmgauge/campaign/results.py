@@ -18,6 +18,7 @@ from swarmgauge.swarm.point import Point
 
 COEFFICIENTS = "coefficients.csv"
 DISTRIBUTIONS = "distributions.csv"
+MEASURED = "measured.csv"
 PROVENANCE = "provenance.json"
 
 # Column to type: text, number (empty is NaN) or count.

@@ -16,6 +16,7 @@ from swarmgauge.swarm.field import Field
 from swarmgauge.swarm.targets import Target, parse_accuracy
 
 from .explain import explain
+from .measured import Datum, fields_of_data, measured_data
 from .runfile_model import SECTIONS_TO_COME, GasSection, RunFileModel
 from .sweep import MOST_POINTS, fields_of
 
@@ -40,7 +41,8 @@ class RunFile:
 
     path : where it stands. title, seed : as given, or their defaults. points : in the order of output, fields fastest.
     accuracy : targets as given (empty: the defaults hold), for PointRun. targets : the same, parsed.
-    parameters : all keys with defaults filled in. text : the file itself.
+    parameters : all keys with defaults filled in. text : the file itself. measured : what the computed coefficients are
+    compared with; None where nothing is.
     """
 
     path: Path
@@ -53,6 +55,7 @@ class RunFile:
     max_minutes: float | None
     parameters: dict[str, Any]
     text: str
+    measured: tuple[Datum, ...] | None = None
 
     @property
     def name(self) -> str:
@@ -75,7 +78,8 @@ def load_run_file(path: str | Path) -> RunFile:
         _refuse_what_is_to_come(document)
         model = _validate(document)
         targets = _parse_targets(model.accuracy.targets)
-        points = _points(model, path.parent)
+        measured = None if model.measured is None else tuple(measured_data(model.measured.files, path.parent))
+        points = _points(model, path.parent, measured)
     except InputError as error:
         raise RunFileError(joined(str(error).splitlines(), f"{path}, ")) from error
     parameters = model.model_dump(mode="json", by_alias=True)
@@ -90,6 +94,7 @@ def load_run_file(path: str | Path) -> RunFile:
         max_minutes=model.accuracy.max_minutes,
         parameters=parameters,
         text=text,
+        measured=measured,
     )
 
 
@@ -116,9 +121,12 @@ def _parse_targets(given: dict[str, Any]) -> tuple[Target, ...]:
         raise RunFileError(f"[accuracy]: {error}") from error
 
 
-def _points(model: RunFileModel, folder: Path) -> tuple[Conditions, ...]:
+def _points(model: RunFileModel, folder: Path, measured: Sequence[Datum] | None) -> tuple[Conditions, ...]:
+    given = model.field.E_over_N_Td
+    if isinstance(given, str):  # "measured", the only word
+        return _points_as_measured(_mixtures(model.gas, folder), measured)
     try:
-        fields = fields_of(model.field.E_over_N_Td)
+        fields = fields_of(given)
     except ValueError as error:
         raise RunFileError(f"[field] E_over_N_Td: {error}") from error
     if 0.0 in fields and 0.0 in model.gas.temperature_K:
@@ -129,6 +137,23 @@ def _points(model: RunFileModel, folder: Path) -> tuple[Conditions, ...]:
         raise RunFileError(f"{count} points are asked for; at most {MOST_POINTS} are possible. Split the campaign.")
     swarms = [Field(E_over_N_Td=field) for field in fields]
     return tuple(Conditions(mixture, field) for mixture, field in product(_mixtures(model.gas, folder), swarms))
+
+
+def _points_as_measured(mixtures: Sequence[Mixture], measured: Sequence[Datum] | None) -> tuple[Conditions, ...]:
+    """Every mixture at the fields of the measurements in its gas."""
+    if measured is None:
+        raise RunFileError('[field] E_over_N_Td = "measured": there is no section [measured]. Add it, with files.')
+    points = []
+    for mixture in mixtures:
+        fields = fields_of_data(measured, mixture)
+        if not fields:
+            gases = ", ".join(dict.fromkeys(str(datum.gas) for datum in measured))
+            raise RunFileError(
+                f'[field] E_over_N_Td = "measured": nothing was measured in {mixture.describe()}; '
+                f"the files hold {gases}. Give a list of fields, or other files."
+            )
+        points += [Conditions(mixture, Field(E_over_N_Td=field)) for field in fields]
+    return tuple(points)
 
 
 def _mixtures(section: GasSection, folder: Path) -> list[Mixture]:

@@ -1,10 +1,11 @@
 """The form of a run file: its keys, their types and their limits."""
 
-from typing import Annotated, Any
+from typing import Annotated, Any, Literal
 
 from pydantic import AfterValidator, BaseModel, BeforeValidator, ConfigDict, Discriminator, Field, Tag, WithJsonSchema
 
-SECTIONS_TO_COME = ("measured", "sensitivity", "refine", "tables")
+SECTIONS_TO_COME = ("sensitivity", "refine", "tables")
+AS_MEASURED = "measured"
 
 
 def _as_list(value: Any) -> Any:
@@ -24,12 +25,14 @@ def _zeros(values: list[float]) -> list[float]:
 
 
 def _fields(value: Any) -> Any:
-    if value == "measured":
-        raise ValueError("not available in this version. Give a list of fields.")
-    return value if isinstance(value, dict) else _as_list(value)
+    if isinstance(value, str) and value != AS_MEASURED:
+        raise ValueError('Give a list of fields, a sweep, or "measured" for those of [measured] files.')
+    return value if isinstance(value, dict | str) else _as_list(value)
 
 
 def _form_of_fields(value: Any) -> str:
+    if isinstance(value, str):
+        return AS_MEASURED
     return "sweep" if isinstance(value, dict | Sweep) else "values"
 
 
@@ -98,7 +101,9 @@ class FieldSection(_Section):
     """The uniform fields that drive the swarm."""
 
     E_over_N_Td: Annotated[
-        Annotated[list[_NonNegative], _Filled, _one_or_many(_NUMBER), Tag("values")] | Annotated[Sweep, Tag("sweep")],
+        Annotated[list[_NonNegative], _Filled, _one_or_many(_NUMBER), Tag("values")]
+        | Annotated[Sweep, Tag("sweep")]
+        | Annotated[Literal["measured"], Tag("measured")],
         Discriminator(_form_of_fields),
         BeforeValidator(_fields),
     ] = Field(examples=[[30, 100, 300]])
@@ -125,6 +130,12 @@ class AccuracySection(BaseModel):
         return dict(self.model_extra or {})
 
 
+class MeasuredSection(_Section):
+    """Measurements that the computed coefficients are compared with."""
+
+    files: list[str] | None = Field(default=None, min_length=1, examples=[["measured/nitrogen.csv"]])
+
+
 class RunFileModel(_Section):
     """A whole run file."""
 
@@ -133,6 +144,7 @@ class RunFileModel(_Section):
     gas: GasSection
     field: FieldSection
     accuracy: AccuracySection = AccuracySection()
+    measured: MeasuredSection | None = None
 
 
 def run_file_schema() -> dict[str, Any]:
