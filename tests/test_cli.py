@@ -16,7 +16,7 @@ from swarmgauge import report
 from swarmgauge.campaign import campaign, locate
 from swarmgauge.campaign.store import ResultsFolder
 from swarmgauge.cli import build_parser, main
-from swarmgauge.gas import load_named, set_text
+from swarmgauge.gas import load_named, load_set, set_text
 
 
 @pytest.fixture
@@ -39,7 +39,7 @@ def test_help_names_every_command(capsys):
         main(["--help"])
     assert stop.value.code == 0
     text = capsys.readouterr().out
-    for command in ("sets", "check", "run"):
+    for command in ("sets", "check", "import", "run"):
         assert f"    {command} " in text
 
 
@@ -104,6 +104,51 @@ def test_check_at_a_field_and_its_figure(tmp_path, capsys):
 def test_check_of_what_is_no_set(capsys):
     assert main(["check", "heliun-crompton1970"]) == 2
     assert "Did you mean helium-crompton1970?" in capsys.readouterr().err
+
+
+@pytest.fixture
+def columns(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "a1delta.txt").write_text("eV, 1e-22 m2\n0.977 0\n1.5 0.58\n3 3.8\n7 9.11\n20 2\n", encoding="utf-8")
+    return tmp_path / "mine.toml"
+
+
+def test_import_of_columns(columns, capsys):
+    words = "import a1delta.txt --to mine.toml --lines 2-6 --energy 1 unit=eV --column 2 id=a1delta kind=excitation"
+    words += " threshold_eV=0.977 unit=1e-22m2 beyond=-1.4 source=beam --set formula=O2 molar_mass_g_per_mol=31.998"
+    assert main([*words.split(), "elastic_is=momentum_transfer", "source=our beam", "rights=ours"]) == 0
+    lines = capsys.readouterr().out.splitlines()
+    assert lines[0] == "mine.toml: a1delta written, 5 rows"
+    assert lines[1].startswith("check: ")
+    assert main(["check", "mine.toml"]) == 0
+
+
+def test_import_asks_at_a_terminal_only(columns, capsys, monkeypatch):
+    words = ["import", "a1delta.txt", "--to", "mine.toml", "--lines", "2-6"]
+    monkeypatch.setattr(sys.stdin, "isatty", lambda: False)
+    assert main(words) == 2
+    faults = capsys.readouterr().err
+    assert faults.startswith("swarmgauge: a1delta.txt: nothing was written, as the columns leave open: ")
+    assert faults.count("\n") == 1
+    assert not columns.exists()
+    said = "1 eV 2 a1delta excitation 1e-22m2 0.977 zero beam O2 31.998 total elastic momentum_transfer us us"
+    answers = iter(said.split())
+    monkeypatch.setattr(sys.stdin, "isatty", lambda: True)
+    monkeypatch.setattr("builtins.input", lambda prompt: next(answers))
+    assert main(words) == 0
+    assert capsys.readouterr().err.count("elastic_is = ") == 2  # "total" and "elastic" are not enough
+    assert load_set(columns).formula == "O2"
+
+
+def test_import_that_is_left_unanswered(columns, capsys, monkeypatch):
+    def nothing(prompt):
+        raise EOFError
+
+    monkeypatch.setattr(sys.stdin, "isatty", lambda: True)
+    monkeypatch.setattr("builtins.input", nothing)
+    assert main(["import", "a1delta.txt", "--to", "mine.toml", "--lines", "2-6"]) == 2
+    assert "nothing was written" in capsys.readouterr().err
+    assert not columns.exists()
 
 
 def test_run_prints_targets_first_and_the_folder_first_and_last(case, capsys):

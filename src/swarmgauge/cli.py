@@ -13,6 +13,7 @@ from .gas.errors import InputError
 
 if TYPE_CHECKING:
     from .campaign import RunFile
+    from .gas.columns.request import Question
 
 DONE, FAILED, BAD_INPUT, MISSED, INTERRUPTED = 0, 1, 2, 3, 130
 
@@ -38,6 +39,24 @@ def build_parser() -> argparse.ArgumentParser:
     check.add_argument("--out", metavar="DIR", type=Path, help="draw a figure of every set into this folder")
     check.add_argument("--json", action="store_true", help="print JSON")
     check.set_defaults(run=run_check)
+
+    columns = commands.add_parser("import", help="take cross sections from columns of numbers into a set file")
+    columns.add_argument("file", metavar="FILE", help="text file with rows of numbers")
+    columns.add_argument("--to", metavar="SET.toml", type=Path, required=True, help="set file to begin or to add to")
+    columns.add_argument("--energy", metavar="WORD", nargs="+", default=[], help="its column and unit, as 1 unit=eV")
+    columns.add_argument(
+        "--column",
+        metavar="WORD",
+        nargs="+",
+        action="append",
+        default=[],
+        help="a column and its process, as 2 id=v1 kind=excitation threshold_eV=0.29 unit=1e-16cm2 beyond=zero; repeat",
+    )
+    columns.add_argument("--each", metavar="WORD", nargs="+", default=[], help="what holds for every --column")
+    columns.add_argument("--set", metavar="WORD", nargs="+", default=[], dest="top", help="of a new set, as formula=O2")
+    columns.add_argument("--lines", metavar="FIRST-LAST", help="where in the file the rows are (default: all lines)")
+    columns.add_argument("--decimal-comma", action="store_true", help="a comma is the sign before decimals")
+    columns.set_defaults(run=run_import)
 
     run = commands.add_parser("run", help="compute all points of a run file")
     run.add_argument("runfile", metavar="RUNFILE", help="path of a run file, or the name of a shipped one")
@@ -72,6 +91,30 @@ def run_check(arguments: argparse.Namespace) -> int:
         paths = [path for one in checked for path in draw_set(one, arguments.out)]
         _print([] if arguments.json else [f"drawn: {path}" for path in paths])
     return MISSED if any(one.wrong for one in checked) else DONE
+
+
+def run_import(arguments: argparse.Namespace) -> int:
+    """Import columns; ask at a terminal what they leave open."""
+    from .campaign.findings import counted
+    from .gas.audit.audit import check_set
+    from .gas.columns.imported import import_file
+    from .gas.columns.request import request_of
+
+    done = import_file(
+        arguments.file,
+        request_of(arguments.energy, arguments.each, arguments.column, arguments.top),
+        arguments.to,
+        lines=arguments.lines,
+        decimal_comma=arguments.decimal_comma,
+        ask=_ask if sys.stdin.isatty() else None,
+    )
+    _print(
+        [
+            f"{arguments.to}: {', '.join(done.new)} written, {done.rows} rows",
+            f"check: {counted(check_set(done.gas))} (swarmgauge check {arguments.to})",
+        ]
+    )
+    return DONE
 
 
 def run_run(arguments: argparse.Namespace) -> int:
@@ -155,6 +198,15 @@ def _preview(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
     elif not arguments.quiet:
         _print(preview_lines(preview))
     return DONE
+
+
+def _ask(question: "Question", trouble: str) -> str:
+    if trouble:
+        print(trouble, file=sys.stderr)
+    try:
+        return input(f"{question.text}? ")
+    except EOFError as error:
+        raise InputError("no answer was given, so nothing was written.") from error
 
 
 def _print(lines: Iterable[str]) -> None:

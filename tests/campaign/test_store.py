@@ -1,6 +1,5 @@
 """The results folder: whole files, one run at a time, damage noticed."""
 
-import os
 import subprocess
 import sys
 
@@ -9,7 +8,7 @@ import pytest
 
 from swarmgauge.campaign import FolderError
 from swarmgauge.campaign.point_file import PointFileError, pack, unpack
-from swarmgauge.campaign.store import ResultsFolder, write_atomically
+from swarmgauge.campaign.store import ResultsFolder
 
 KEY = "0123456789abcdef0123456789abcdef"
 STATE = {"sums": np.arange(6.0).reshape(2, 3), "counts": np.array([1, 2]), "cut": 0.25, "cohorts": 2, "note": "a b"}
@@ -100,17 +99,3 @@ def test_a_folder_of_other_things_is_left_alone(tmp_path):
     with pytest.raises(FolderError, match="holds files and is no results folder"), ResultsFolder(tmp_path).lock():
         pass
     assert [path.name for path in tmp_path.iterdir()] == ["letter.txt"]
-
-
-def test_a_failed_write_keeps_the_old_file(tmp_path, monkeypatch):
-    path = tmp_path / "kept"
-    write_atomically(path, b"old")
-
-    def full(descriptor):
-        raise OSError(28, "No space left on device")
-
-    monkeypatch.setattr(os, "fsync", full)
-    with pytest.raises(OSError, match="No space left"):
-        write_atomically(path, b"new")
-    assert path.read_bytes() == b"old"
-    assert [path.name for path in tmp_path.iterdir()] == ["kept"]

@@ -2,18 +2,17 @@
 
 import errno
 import fcntl
-import os
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
 from swarmgauge.gas import InputError
+from swarmgauge.gas.files import PARTIAL, write_atomically
 
 from .point_file import PointFileError, pack, unpack
 
 _LOCK = ".lock"
-_PARTIAL = ".partial"
 
 
 class FolderError(InputError):
@@ -53,7 +52,7 @@ class ResultsFolder:
                     f"{self.path}: another run is at work on this folder. Wait for it, or choose another with --out."
                 ) from error
             for folder in (self.path, self.points):
-                for left_over in folder.glob(f".*{_PARTIAL}"):  # from a run that was killed while writing
+                for left_over in folder.glob(f".*{PARTIAL}"):  # from a run that was killed while writing
                     left_over.unlink()
             yield
 
@@ -89,22 +88,3 @@ class ResultsFolder:
 
     def _file(self, key: str) -> Path:
         return self.points / f"{key}.point"
-
-
-def write_atomically(path: Path, content: bytes) -> None:
-    """Write a file so that at every moment the old one or the new one is there, whole, even when power fails."""
-    partial = path.with_name(f".{path.name}{_PARTIAL}")
-    try:
-        with open(partial, "wb") as handle:
-            handle.write(content)
-            handle.flush()
-            os.fsync(handle.fileno())
-        partial.replace(path)
-    except BaseException:
-        partial.unlink(missing_ok=True)
-        raise
-    folder = os.open(path.parent, os.O_RDONLY)
-    try:
-        os.fsync(folder)  # the new name itself
-    finally:
-        os.close(folder)

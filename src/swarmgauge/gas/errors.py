@@ -16,6 +16,10 @@ class SetFileError(InputError):
     """A set file cannot be used, found or written."""
 
 
+class ColumnError(InputError):
+    """A file of columns cannot be imported, or leaves questions open."""
+
+
 class MixtureError(InputError):
     """A mixture is not a possible one."""
 

@@ -72,12 +72,12 @@ def gas_from_content(content: dict[str, Any], place: str) -> Gas:
         raise SetFileError(f"{place}, {error}") from error
 
 
-def read_text(path: Path) -> str:
-    """The text of a small UTF-8 file; raises SetFileError."""
+def read_text(path: Path, wanted: str = "a TOML file") -> str:
+    """The text of a small UTF-8 file; raises SetFileError, which names what was wanted."""
     try:
         status = path.stat()
         if not stat.S_ISREG(status.st_mode):
-            raise SetFileError(f"{path}: is {_what(status.st_mode)}, not a file. Give the path of a TOML file.")
+            raise SetFileError(f"{path}: is {_what(status.st_mode)}, not a file. Give the path of {wanted}.")
         if status.st_size > LARGEST_FILE_BYTES:
             raise SetFileError(
                 f"{path}: has {status.st_size / 1e6:.0f} MB, more than the {LARGEST_FILE_BYTES / 1e6:.0f} MB that are "

@@ -32,7 +32,12 @@ def set_text(gas: Gas) -> str:
         "trusted_E_over_N_Td": None if trusted is None else _inline_list(trusted),
         "table_temperature_K": gas.table_temperature_K,
     }
-    return "\n".join([_lines(top), *("[[process]]\n" + _lines(_entries(process)) for process in gas.published)])
+    return "\n".join([_lines(top), *map(process_text, gas.published)])
+
+
+def process_text(process: Process) -> str:
+    """The text of one process in a set file; ends with a new line."""
+    return "[[process]]\n" + _lines(_entries(process))
 
 
 def write_set(gas: Gas, path: str | os.PathLike[str]) -> None:

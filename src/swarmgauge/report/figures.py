@@ -7,7 +7,7 @@ import matplotlib as mpl
 from matplotlib.figure import Figure
 
 from swarmgauge.campaign.results import open_results
-from swarmgauge.campaign.store import write_atomically
+from swarmgauge.gas.files import write_atomically
 
 from .coefficients import coefficients_figure
 from .eedf import eedf_figure
