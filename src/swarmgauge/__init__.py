@@ -9,6 +9,7 @@ _HOME = {
     "Gas": "gas",
     "Mixture": "gas",
     "Process": "gas",
+    "critical_field": "swarm",
     "load_set": "gas",
     "open_results": "campaign",
     "saturation_pressure_Pa": "gas",

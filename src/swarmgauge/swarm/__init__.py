@@ -12,6 +12,7 @@ _HOME = {
     "Field": "field",
     "Point": "point",
     "PointRun": "point_run",
+    "critical_field": "critical",
     "drive": "schedule",
     "parse_accuracy": "targets",
     "point_key": "point_run",
