@@ -158,6 +158,7 @@ def test_run_prints_targets_first_and_the_folder_first_and_last(case, capsys):
     lines = text.splitlines()
     assert lines[0] == "case: standard errors asked for: mean_energy 1 %"
     assert "oxygen-lawton1978/attachment-3body: third bodies that act: 1 x oxygen-lawton1978" in unwrapped(text)
+    assert re.search(r"check: oxygen-lawton1978 \d+ doubts, \d+ notes \(provenance.json; ", unwrapped(text))
     assert lines[-1] == "case"
     assert max(map(len, lines)) <= 80
     assert sorted(path.name for path in Path("case").iterdir() if not path.name.startswith(".")) == [
@@ -166,6 +167,17 @@ def test_run_prints_targets_first_and_the_folder_first_and_last(case, capsys):
         "points",
         "provenance.json",
     ]
+
+
+def test_a_run_with_a_set_that_cannot_be_right(case, capsys):
+    text = set_text(load_named("oxygen-lawton1978")).replace("threshold_eV = 12.06", "threshold_eV = 2.06")
+    Path("wrong.toml").write_text(text, encoding="utf-8")
+    case.write_text(RUN_FILE.replace("oxygen-lawton1978", "wrong.toml"), encoding="utf-8")
+    assert main(["run", "case.toml"]) == 3
+    text = unwrapped(capsys.readouterr().out)
+    assert "! oxygen-lawton1978, ionization, 2.06 eV: threshold 2.06 eV, but O2 has 12.0697 eV" in text
+    findings = json.loads(Path("case/provenance.json").read_text(encoding="utf-8"))["check"]["oxygen-lawton1978"]
+    assert [one["topic"] for one in findings if one["grade"] == "error"] == ["ionization energy", "threshold"]
 
 
 def test_default_targets_are_printed(case, capsys):

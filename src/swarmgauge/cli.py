@@ -159,6 +159,7 @@ def main(argv: Sequence[str] | None = None) -> int:
 
 def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:
     from .campaign import run_campaign
+    from .campaign.findings import any_error
     from .campaign.messages import closing, opening
     from .campaign.progress import Bars
     from .campaign.summary import outcome_json
@@ -186,7 +187,7 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
         _print([json.dumps(outcome_json(outcome), indent=1)])
     if outcome.interrupted:
         return INTERRUPTED
-    return MISSED if outcome.missed else DONE
+    return MISSED if outcome.missed or any_error(run_file.gases) else DONE
 
 
 def _preview(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:

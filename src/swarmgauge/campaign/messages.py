@@ -10,6 +10,7 @@ from swarmgauge.swarm.targets import Target
 
 from .campaign import Outcome
 from .console import field_text, missed_target, table, wrapped
+from .findings import run_lines
 from .laws import special_laws
 from .runfile import RunFile
 from .trust import outside
@@ -19,7 +20,7 @@ MOST_WARNINGS = 12
 
 
 def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -> Iterator[str]:
-    """The folder, which targets hold, the limits, which third bodies act, and which laws are not the default ones."""
+    """The folder, targets, limits, third bodies that act, laws that are not the default, findings about sets."""
     targets = ", ".join(f"{target.pattern} {target}{_reach(target)}" for target in run_file.targets)
     yield from wrapped(f"{folder}: standard errors asked for: {targets}")
     limit = max_minutes or run_file.max_minutes
@@ -33,6 +34,7 @@ def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -
     lines = [line for mixture in mixtures for line in (*_third_bodies(mixture), *special_laws(mixture))]
     for line in dict.fromkeys(lines):
         yield from wrapped(line)
+    yield from run_lines(run_file.gases)
 
 
 def closing(run_file: RunFile, outcome: Outcome) -> Iterator[str]:

@@ -16,6 +16,7 @@ from swarmgauge.swarm.point import Point
 from swarmgauge.swarm.targets import DEFAULT_ACCURACY
 
 from .composition import parts_of
+from .findings import findings_of
 from .laws import special_laws
 from .results import checksum
 from .runfile import RunFile
@@ -52,8 +53,9 @@ def provenance(
         },
         "run_file": {"name": run_file.path.name, "sha256": checksum(run_file.text)},
         "parameters": _parameters(run_file),
-        "sets": {gas.name: _set_hash(gas) for gas in _gases(run_file)},
+        "sets": {gas.name: _set_hash(gas) for gas in run_file.gases},
         "mixtures": {mixture.describe(): _composition(mixture) for mixture in _mixtures(run_file)},
+        "check": {gas.name: [finding.as_json() for finding in findings_of(gas)] for gas in run_file.gases},
         "laws": list(dict.fromkeys(line for mixture in _mixtures(run_file) for line in special_laws(mixture))),
         "computer": {"cpu": cpu_model(), "system": f"{platform.system()} {platform.machine()}"},
         "flags": {name: os.environ[name] for name in _FLAGS if name in os.environ},
@@ -88,10 +90,6 @@ def _parameters(run_file: RunFile) -> dict[str, Any]:
 
 def _mixtures(run_file: RunFile) -> list[Mixture]:
     return list({id(point.mixture): point.mixture for point in run_file.points}.values())
-
-
-def _gases(run_file: RunFile) -> list[Gas]:
-    return list({gas.name: gas for mixture in _mixtures(run_file) for gas in mixture.gases}.values())
 
 
 def _fractions(mixture: Mixture) -> dict[str, float]:

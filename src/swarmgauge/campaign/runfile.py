@@ -62,6 +62,11 @@ class RunFile:
         """Name of the campaign: that of the file without its ending."""
         return self.path.stem
 
+    @property
+    def gases(self) -> list[Gas]:
+        """The sets of all mixtures, each once."""
+        return list({gas.name: gas for point in self.points for gas in point.mixture.gases}.values())
+
     def __repr__(self) -> str:
         return f"RunFile({self.name}: {self.title or 'no title'}; {len(self.points)} points, seed {self.seed})"
 

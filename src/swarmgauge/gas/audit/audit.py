@@ -2,6 +2,8 @@
 
 from collections.abc import Callable, Iterator
 
+import numpy as np
+
 from ..gas import Gas
 from .beb import check_beb
 from .curves import check_duplicates, check_gaps, check_jumps
@@ -36,5 +38,6 @@ CHECKS: tuple[Callable[[Gas], Iterator[Finding]], ...] = (
 
 def check_set(gas: Gas) -> tuple[Finding, ...]:
     """Everything found about a set: errors first, then doubts, then notes."""
-    found = [finding for check in CHECKS for finding in check(gas)]
+    with np.errstate(all="ignore"):  # absurd numbers are what is looked for
+        found = [finding for check in CHECKS for finding in check(gas)]
     return tuple(sorted(found, key=lambda finding: GRADES.index(finding.grade)))

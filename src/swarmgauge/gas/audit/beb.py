@@ -1,5 +1,6 @@
 """Ionization against the binary-encounter-Bethe formula."""
 
+import math
 from collections.abc import Iterator, Sequence
 
 import numpy as np
@@ -14,6 +15,7 @@ _FROM, _TO_EV = 4.0, 5000.0  # from that multiple of the ionization energy on th
 _DOUBT, _ERROR = 1.3, 2.0
 _BOHR2 = 2.8003e-21 / 1e-20  # bohr2 in 1e-20 m2
 _NEAR = 1.15
+_NONE = 1e-9  # a ratio below it counts as none
 
 
 def beb_cross_section(energy_eV: np.ndarray, orbitals: Sequence[Orbital]) -> np.ndarray:
@@ -47,11 +49,12 @@ def check_beb(gas: Gas) -> Iterator[Finding]:
     energy = np.geomspace(low, high, 100)
     total = np.sum([process.cross_section(energy) for process in processes], axis=0)
     ratio = total / beb_cross_section(energy, ORBITALS[gas.formula])
-    worst = int(np.argmax(np.abs(np.log(np.maximum(ratio, 1e-300)))))
-    middle = float(np.median(ratio))
-    if max(ratio[worst], 1.0 / ratio[worst]) < _DOUBT:
+    off = np.abs(np.log(np.maximum(ratio, _NONE)))
+    worst = int(np.argmax(off))
+    if off[worst] < math.log(_DOUBT):
         return
-    wrong = max(middle, 1.0 / middle) > _ERROR
+    middle = float(np.median(ratio))
+    wrong = float(np.median(off)) > math.log(_ERROR)
     yield Finding(
         "error" if wrong else "doubt",
         "binary-encounter-Bethe",

@@ -60,6 +60,8 @@ def _nodes(edges: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
 
 def _coarse(process: Process, table: Table) -> Iterator[Finding]:
     temperature, change, parts = rate_differences(process, table)
+    if not len(temperature):  # nothing is left of it above its threshold, or all lies far above the temperatures
+        return
     worst = int(np.argmax(np.abs(change)))
     if abs(change[worst]) < _NOTE:
         return

@@ -29,9 +29,9 @@ def check_elastic(gas: Gas) -> Iterator[Finding]:
     if clipped is None or clipped.share < _CLIPPED_NOTE:
         return
     total = next(process for process in gas.published if process.id == elastic[0].id)
-    excess = clipped.peak_m2 / float(total.cross_section(np.array([clipped.at_eV]))[0])
+    there = float(total.cross_section(np.array([clipped.at_eV]))[0])
     yield Finding(
-        "error" if excess > _CLIPPED_MUCH and clipped.at_eV < _SWARMS_EV else "doubt",
+        "error" if clipped.peak_m2 > _CLIPPED_MUCH * there and clipped.at_eV < _SWARMS_EV else "doubt",
         "elastic part of the total",
         f"{clipped}.",
         "Too large losses or too small a total: compare both with their sources there.",
