@@ -57,6 +57,13 @@ def test_outside_the_trusted_range():
     assert notes == ["note"]
 
 
+def test_a_swarm_that_runs_away():
+    findings = probe(load_named("helium-crompton1970"), 2000.0).findings
+    assert ("doubt", "the two-term solution at 2000 Td has not converged; the ranges are worth little.") in {
+        (one.grade, one.reason) for one in findings
+    }
+
+
 def test_three_body_processes_do_not_act():
     found = probe(load_named("oxygen-lawton1978"), 50.0)
     (three,) = [one for one in found.processes if one.three_body]

@@ -6,6 +6,8 @@ from typing import TYPE_CHECKING, Any
 from .errors import InputError, MixtureError, ProcessError, SetFileError
 
 if TYPE_CHECKING:
+    from .audit.audit import check_set
+    from .audit.finding import Finding
     from .gas import Gas
     from .humidity import saturation_pressure_Pa, water_fraction
     from .laws import PowerLaw, Ramp, Table
@@ -20,6 +22,7 @@ if TYPE_CHECKING:
 
 __all__ = [
     "AngleTable",
+    "Finding",
     "Forward",
     "Gas",
     "InputError",
@@ -35,6 +38,7 @@ __all__ = [
     "SetFileError",
     "Sharing",
     "Table",
+    "check_set",
     "load_named",
     "load_named_or_path",
     "load_set",
@@ -47,6 +51,7 @@ __all__ = [
 ]
 _HOME = {
     "AngleTable": "scattering",
+    "Finding": "audit.finding",
     "Forward": "scattering",
     "Gas": "gas",
     "Isotropic": "scattering",
@@ -58,6 +63,7 @@ _HOME = {
     "ScreenedToRatio": "scattering",
     "Sharing": "sharing",
     "Table": "laws",
+    "check_set": "audit.audit",
     "load_named": "library",
     "load_named_or_path": "library",
     "load_set": "setfile",

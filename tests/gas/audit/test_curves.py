@@ -56,6 +56,13 @@ def test_a_proportional_process(helium, add, found):
     assert found(add(helium, "triplets", id="half", law=half, passive=True)) <= {("doubt", "total and sum", "half")}
 
 
+def test_proportional_with_another_threshold(helium, add, found):
+    law = helium.process("triplets").law
+    half = Table(law.energy_eV, 0.5 * law.cross_section_m2, law.beyond)
+    # the later one of the two is named
+    assert ("note", "duplicate", "triplets") in found(add(helium, "triplets", id="half", law=half, threshold_eV=19.0))
+
+
 def test_a_coarse_grid(helium, plant, found):
     law = helium.process("triplets").law
     assert ("doubt", "grid", "triplets") in found(

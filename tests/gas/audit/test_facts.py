@@ -127,6 +127,12 @@ def test_cross_sections_in_another_unit(helium, unit, factor):
     assert all(unit in one.reason for one in findings if one.process == "elastic")
 
 
+def test_one_excitation_in_another_unit(helium, plant, found):
+    law = helium.process("triplets").law
+    in_cm2 = Table(law.energy_eV, 1e4 * law.cross_section_m2, law.beyond)
+    assert found(plant(helium, "triplets", law=in_cm2)) == {("error", "unit", "triplets")}
+
+
 def test_too_small_cross_sections(helium, plant, found):
     law = helium.process("elastic").law
     small = Table(law.energy_eV, 1e-4 * law.cross_section_m2, law.beyond)

@@ -43,17 +43,21 @@ class Finding:
         return ", ".join(parts)
 
     def as_json(self) -> dict[str, Any]:
-        """All of it as plain values."""
+        """All of it as plain values, energies with six digits."""
         return {
             "grade": self.grade,
             "topic": self.topic,
             "process": self.process,
             "row": self.row,
-            "low_eV": self.low_eV,
-            "high_eV": self.high_eV,
+            "low_eV": _rounded(self.low_eV),
+            "high_eV": _rounded(self.high_eV),
             "reason": self.reason,
             "remedy": self.remedy,
         }
+
+
+def _rounded(value: float | None) -> float | None:
+    return None if value is None else float(f"{value:.6g}")
 
 
 def tables_of(gas: Gas) -> Iterator[tuple[Process, Table]]:
