@@ -39,7 +39,7 @@ def test_help_names_every_command(capsys):
         main(["--help"])
     assert stop.value.code == 0
     text = capsys.readouterr().out
-    for command in ("sets", "check", "import", "run"):
+    for command in ("sets", "check", "import", "run", "compare"):
         assert f"    {command} " in text
 
 

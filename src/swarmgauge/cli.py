@@ -12,7 +12,7 @@ from . import __version__
 from .gas.errors import InputError
 
 if TYPE_CHECKING:
-    from .campaign import RunFile
+    from .campaign import Outcome, RunFile
     from .gas.columns.request import Question
 
 DONE, FAILED, BAD_INPUT, MISSED, INTERRUPTED = 0, 1, 2, 3, 130
@@ -68,6 +68,14 @@ def build_parser() -> argparse.ArgumentParser:
     run.add_argument("--quiet", action="store_true", help="print nothing but faults")
     run.add_argument("--json", action="store_true", help="print JSON instead of the table")
     run.set_defaults(run=run_run)
+
+    compare = commands.add_parser("compare", help="hold results against measured data")
+    compare.add_argument("folder", metavar="DIR", type=Path, help="results folder of a run")
+    compare.add_argument(
+        "--measured", metavar="FILE", type=Path, nargs="+", default=[], help="data (default: those of the run file)"
+    )
+    compare.add_argument("--json", action="store_true", help="print JSON")
+    compare.set_defaults(run=run_compare)
     return parser
 
 
@@ -135,6 +143,20 @@ def run_run(arguments: argparse.Namespace) -> int:
     return DONE
 
 
+def run_compare(arguments: argparse.Namespace) -> int:
+    """Compare a results folder with measured data."""
+    from .gauge.comparing import compare_folder, comparison_json, comparison_lines
+    from .report import draw_comparison
+
+    comparison = compare_folder(arguments.folder, arguments.measured)
+    draw_comparison(comparison)
+    if arguments.json:
+        _print([json.dumps(comparison_json(comparison), indent=1)])
+    else:
+        _print([*comparison_lines(comparison), f"{comparison.folder}"])
+    return DONE
+
+
 def main(argv: Sequence[str] | None = None) -> int:
     """Do what the arguments say (those of the process where None); return the exit status."""
     for stream in (sys.stdout, sys.stderr):
@@ -181,13 +203,26 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
         from .report import draw_figures
 
         draw_figures(outcome.folder)
+    measured = _measured_lines(run_file, outcome)
     if shown:
-        _print(closing(run_file, outcome))
+        _print(closing(run_file, outcome, measured))
     elif arguments.json:
         _print([json.dumps(outcome_json(outcome), indent=1)])
     if outcome.interrupted:
         return INTERRUPTED
     return MISSED if outcome.missed or any_error(run_file.gases) else DONE
+
+
+def _measured_lines(run_file: "RunFile", outcome: "Outcome") -> list[str]:
+    """Compare a finished campaign with the measurements that its run file names, and say how it compares."""
+    if run_file.measured is None or outcome.interrupted or not outcome.points:
+        return []
+    from .gauge.comparing import compare_folder, comparison_lines
+    from .report import draw_comparison
+
+    comparison = compare_folder(outcome.folder)
+    draw_comparison(comparison)
+    return list(comparison_lines(comparison))
 
 
 def _preview(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:

@@ -230,7 +230,7 @@ def test_a_results_folder_keeps_the_data(tmp_path, stand_in):
     assert (kept.E_over_N_Td, kept.value) == (10.0, pytest.approx(1.85e4))
     origin = open_results(outcome.folder).provenance
     assert origin["parameters"]["measured"] == {"files": ["data.csv"]}
-    assert origin["mixtures"] == {"1 nitrogen-phelps1985": {"parts": {"N2": 1.0}, "three_body": False}}
+    assert origin["mixtures"] == {"1 nitrogen-phelps1985": {"parts": {"N2": 1.0}, "three_body": False, "as_gas": True}}
 
 
 def test_a_file_that_is_not_there_is_told_with_its_run_file(tmp_path):

@@ -3,22 +3,14 @@
 from swarmgauge.gas.errors import suggestion
 from swarmgauge.swarm.quantities import UNITS
 
+# What papers on pulsed Townsend experiments print.
 PT_RATIO = "net_frequency_over_drift_bulk_over_N"
-# Of a steady stream between plates, and the ratio that papers on pulsed Townsend experiments print.
-_MORE_UNITS = {
-    "townsend_alpha_over_N": "m^2",
-    "townsend_eta_over_N": "m^2",
-    "townsend_effective_over_N": "m^2",
-    "sst_mean_energy": "eV",
-    "sst_drift_velocity": "m/s",
-    PT_RATIO: "m^2",
-}
 METHODS = ("TOF", "PT", "SST", "other")
 _PER_PROCESS = ("rate:", "rate3:")
 _SIGNED = ("net_frequency", "townsend_effective", "skewness")
 MEASURABLE = {
     name: unit
-    for name, unit in {**UNITS, **_MORE_UNITS}.items()
+    for name, unit in {**UNITS, PT_RATIO: "m^2"}.items()
     if not name.endswith(":") and not name.startswith(("field_heating", "energy_balance"))
 }
 _SYMBOLS = {

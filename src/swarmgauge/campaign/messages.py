@@ -37,10 +37,14 @@ def opening(run_file: RunFile, folder: Path, max_minutes: float | None = None) -
     yield from run_lines(run_file.gases)
 
 
-def closing(run_file: RunFile, outcome: Outcome) -> Iterator[str]:
-    """The table, what was missed, what to beware of, how to go on, and the folder."""
+def closing(run_file: RunFile, outcome: Outcome, measured: Sequence[str] = ()) -> Iterator[str]:
+    """The table, what was missed, what to beware of, how to go on, and the folder.
+
+    measured : lines about measured data, which follow the table.
+    """
     points = list(outcome.points.values())
     yield from table(points)
+    yield from measured
     yield from remedies(points, run_file.max_minutes_per_point)
     yield from warnings(points)
     for text in outcome.set_aside:
@@ -56,10 +60,11 @@ def closing(run_file: RunFile, outcome: Outcome) -> Iterator[str]:
             "Give the same command again, with more minutes, to go on from here."
         )
     reused = f", {outcome.reused} of them from before" if outcome.reused else ""
+    compared = "comparison.csv, verdicts.csv, ranking.csv, " if measured else ""
     figures = "" if outcome.interrupted else ", figures/"
     yield from wrapped(
         f"{len(points)} points{reused}, {_duration(outcome.wall_seconds)}. Written: coefficients.csv, "
-        f"distributions.csv, provenance.json{figures}"
+        f"distributions.csv, {compared}provenance.json{figures}"
     )
     yield f"{outcome.folder}"
 

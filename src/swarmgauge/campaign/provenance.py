@@ -99,7 +99,11 @@ def _fractions(mixture: Mixture) -> dict[str, float]:
 def _composition(mixture: Mixture) -> dict[str, Any]:
     """What a measurement must have in common with a mixture."""
     bodies = [process.third_body for gas in mixture.gases for process in mixture.acting(gas)]
-    return {"parts": parts_of(mixture), "three_body": any(body is not None for body in bodies)}
+    return {
+        "parts": parts_of(mixture),
+        "three_body": any(body is not None for body in bodies),
+        "as_gas": mixture.vibrational_temperature_K is None and not mixture.level_fractions,
+    }
 
 
 def _rounded(value: float) -> float | None:

@@ -135,14 +135,14 @@ def _scale(axes: Axes, curves: Sequence[np.ndarray]) -> None:
     if values.size == 0:
         return
     if values.min() > 0.0:
-        _scale_log(axes, values.min(), values.max())
+        scale_log(axes, values.min(), values.max())
     else:
         largest = np.abs(values).max()
         axes.set_yscale("symlog", linthresh=10.0 ** (np.floor(np.log10(largest)) - _DECADES_AROUND_ZERO + 1))
         axes.axhline(0.0, color=GREY, linewidth=0.6)
 
 
-def _scale_log(axes: Axes, low: float, high: float) -> None:
+def scale_log(axes: Axes, low: float, high: float) -> None:
     """A logarithmic axis that the values fill, labelled within its decades where there are few."""
     axes.set_yscale("log")
     margin = (high / low) ** 0.06 * 1.05
