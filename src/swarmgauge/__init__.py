@@ -4,6 +4,7 @@ from importlib import import_module
 from typing import Any
 
 _HOME = {
+    "Emission": "swarm",
     "Estimate": "swarm",
     "Field": "swarm",
     "Gas": "gas",
@@ -14,6 +15,7 @@ _HOME = {
     "open_results": "campaign",
     "saturation_pressure_Pa": "gas",
     "simulate": "swarm",
+    "simulate_relaxation": "swarm",
     "simulate_difference": "swarm",
     "water_fraction": "gas",
 }

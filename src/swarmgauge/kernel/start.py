@@ -48,11 +48,16 @@ def compiled_place():
     return compiled(run_place)
 
 
-def launch(rows, start, size, lanes, energy_edges, cumulated):
-    """Seed all streams from the SplitMix64 state `start` and place `size` electrons; see `place`."""
+def seed_streams(rows, start, lanes):
+    """Seed both streams of all lanes from the SplitMix64 state `start`; the electrons get their names."""
     states = seeded_streams(start, 2 * lanes)
     words = rows.view(np.uint64).reshape(ROWS, lanes)
     words[STREAM : STREAM + 4] = states[:, :lanes]
     words[SPARE_STREAM : SPARE_STREAM + 4] = states[:, lanes:]
     words[IDENTITY] = states[0, :lanes]
+
+
+def launch(rows, start, size, lanes, energy_edges, cumulated):
+    """Seed all streams from the SplitMix64 state `start` and place `size` electrons; see `place`."""
+    seed_streams(rows, start, lanes)
     compiled_place()(rows, size, lanes, energy_edges, cumulated)

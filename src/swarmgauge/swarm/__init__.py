@@ -8,6 +8,7 @@ from typing import Any
 
 _HOME = {
     "EnergyDistribution": "point",
+    "Emission": "cathode",
     "Estimate": "estimate",
     "Field": "field",
     "Point": "point",
@@ -17,6 +18,7 @@ _HOME = {
     "parse_accuracy": "targets",
     "point_key": "point_run",
     "simulate": "schedule",
+    "simulate_relaxation": "cathode",
     "simulate_difference": "difference",
     "solve_two_term": "two_term",
 }
