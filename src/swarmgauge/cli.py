@@ -12,8 +12,9 @@ from . import __version__
 from .gas.errors import InputError
 
 if TYPE_CHECKING:
-    from .campaign import Outcome, RunFile
+    from .campaign import RunFile
     from .gas.columns.request import Question
+    from .gauge.comparing import Comparison
 
 DONE, FAILED, BAD_INPUT, MISSED, INTERRUPTED = 0, 1, 2, 3, 130
 
@@ -145,11 +146,9 @@ def run_run(arguments: argparse.Namespace) -> int:
 
 def run_compare(arguments: argparse.Namespace) -> int:
     """Compare a results folder with measured data."""
-    from .gauge.comparing import compare_folder, comparison_json, comparison_lines
-    from .report import draw_comparison
+    from .gauge.comparing import comparison_json, comparison_lines
 
-    comparison = compare_folder(arguments.folder, arguments.measured)
-    draw_comparison(comparison)
+    comparison = _compare_and_draw(arguments.folder, arguments.measured)
     if arguments.json:
         _print([json.dumps(comparison_json(comparison), indent=1)])
     else:
@@ -185,6 +184,7 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
     from .campaign.messages import closing, opening
     from .campaign.progress import Bars
     from .campaign.summary import outcome_json
+    from .gauge.comparing import comparison_json, comparison_lines
 
     shown = not (arguments.quiet or arguments.json)
     if shown:
@@ -203,26 +203,26 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
         from .report import draw_figures
 
         draw_figures(outcome.folder)
-    measured = _measured_lines(run_file, outcome)
+    comparison = None
+    if outcome.points and not outcome.interrupted and run_file.measured is not None:
+        comparison = _compare_and_draw(outcome.folder)
     if shown:
-        _print(closing(run_file, outcome, measured))
+        _print(closing(run_file, outcome, list(comparison_lines(comparison)) if comparison else []))
     elif arguments.json:
-        _print([json.dumps(outcome_json(outcome), indent=1)])
+        found = {"comparison": comparison_json(comparison)} if comparison else {}
+        _print([json.dumps({**outcome_json(outcome), **found}, indent=1)])
     if outcome.interrupted:
         return INTERRUPTED
     return MISSED if outcome.missed or any_error(run_file.gases) else DONE
 
 
-def _measured_lines(run_file: "RunFile", outcome: "Outcome") -> list[str]:
-    """Compare a finished campaign with the measurements that its run file names, and say how it compares."""
-    if run_file.measured is None or outcome.interrupted or not outcome.points:
-        return []
-    from .gauge.comparing import compare_folder, comparison_lines
+def _compare_and_draw(folder: Path, files: Sequence[Path] = ()) -> "Comparison":
+    from .gauge.comparing import compare_folder
     from .report import draw_comparison
 
-    comparison = compare_folder(outcome.folder)
+    comparison = compare_folder(folder, files)
     draw_comparison(comparison)
-    return list(comparison_lines(comparison))
+    return comparison
 
 
 def _preview(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -> int:

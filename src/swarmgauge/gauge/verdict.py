@@ -100,15 +100,15 @@ def _trend(signs: Sequence[bool], by_chance: float) -> str:
 
 def _words(pairs: Sequence[Compared], probability: float, trend: str) -> str:
     worst = max(pairs, key=lambda pair: abs(pair.pull))
-    at_worst = f"{worst.datum.E_over_N_Td:.4g} Td: {_size(worst)}"
     if sum(pair.computed_error > pair.datum.standard_error for pair in pairs) > len(pairs) / 2:
         return "undecided: the computed errors exceed those of the measurement. Ask for more accuracy"
     if probability < _DOUBTFUL:
         grade = "disagrees" if probability < _DISAGREES else "doubtful"
-        return f"{grade}{_course(pairs, trend)}; worst at {at_worst}"
+        return f"{grade}{_course(pairs, trend)}; worst at {worst.datum.E_over_N_Td:.4g} Td: {_size(worst)}"
     if trend in ("high", "low", "turns"):
         return f"agrees within its errors, but{_course(pairs, trend)}"
-    return f"agrees ({_per_cent(mean_deviation(pairs))} on average)" if len(pairs) > 1 else f"agrees ({at_worst})"
+    where = "on average" if len(pairs) > 1 else f"at {worst.datum.E_over_N_Td:.4g} Td"
+    return f"agrees ({_per_cent(mean_deviation(pairs))} {where})"
 
 
 def _course(pairs: Sequence[Compared], trend: str) -> str:
