@@ -65,10 +65,15 @@ class Cell:
 def study(
     gas: str, field: float, runs: int, flights: float, executor, quantities=QUANTITIES, rare: tuple[str, ...] = ()
 ) -> list[Cell]:
-    """Coverage in one case over `runs` runs of COHORTS cohorts of about `flights` flights each, split for `rare`."""
+    """Coverage in one case over `runs` runs of COHORTS cohorts of about `flights` flights each, split for `rare`.
+
+    Cohorts have a quarter of their electrons, so that a run does not last longer for its memory than for its flights.
+    """
     plan = prepare(sg.Mixture({gas: 1.0}, **GASES[gas]), sg.Field(field), 11, rare).plan
     assert plan is not None
-    scale = flights / 2e6
+    if not rare:
+        plan = replace(plan, electrons=plan.electrons // 4)
+    scale = 4.0 * flights / 2e6
     plan = replace(plan, measured_windows=max(2 * plan.lags, math.ceil(scale * plan.measured_windows)))
     rows = np.array([sums for sums, _ in executor.map(lambda index: run_cohort(plan, index), range(runs * COHORTS))])
     reducer = Reducer(plan)
