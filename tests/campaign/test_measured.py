@@ -1,8 +1,12 @@
 """Files of measured data: what is read, and what is asked back."""
 
+import csv
+import io
 import math
 
 import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
 
 from swarmgauge.campaign import RunFileError, load_run_file, open_results, run_campaign
 from swarmgauge.campaign.composition import Composition, CompositionError, parts_of
@@ -33,6 +37,12 @@ def write(folder, *rows, columns=COLUMNS):
     lines = [",".join(columns), *(",".join(f'"{row[name]}"' for name in columns) for row in rows)]
     path.write_text("\n".join(lines) + "\n", encoding="utf-8")
     return path
+
+
+def measured_row(row):
+    text = io.StringIO(newline="")
+    csv.writer(text).writerows([COLUMNS, [row[name] for name in COLUMNS]])
+    return text.getvalue()
 
 
 def read_one(folder, **changes):
@@ -83,6 +93,7 @@ REFUSED = {
     "not a number": ({"value": "1,5"}, "column value", "is not a number"),
     "infinite": ({"value": "inf"}, "column value", "is not a number"),
     "faster than light": ({"value": "4e10"}, "column value", "faster than light"),
+    "field in another unit": ({"E_over_N_unit": "V m2"}, "column E_over_N", "2e+22 Td is no field of a swarm"),
     "negative field": ({"E_over_N": "-1"}, "column E_over_N", "negative"),
     "absolute zero": ({"temperature_K": "0"}, "column temperature_K", "impossible in an experiment"),
     "gas in words": ({"gas": "nitrogen gas"}, "column gas", "Give a formula such as N2"),
@@ -140,6 +151,28 @@ def test_a_file_that_is_no_table_is_refused(tmp_path, text, words):
         read_measured(path)
     assert str(refusal.value).startswith(str(path))
     assert words in str(refusal.value)
+
+
+@settings(max_examples=200, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+@given(
+    column=st.sampled_from(COLUMNS),
+    cell=st.one_of(
+        st.text(max_size=12),
+        st.text(alphabet="0123456789.-+eE^/() cmVTdorN2O", max_size=16),
+        st.floats().map(str),
+        st.integers(-(10**400), 10**400).map(str),
+    ),
+)
+def test_whatever_stands_in_a_cell_is_read_or_refused(tmp_path, column, cell):
+    path = tmp_path / "data.csv"
+    path.write_text(measured_row({**GOOD, column: cell}), encoding="utf-8", errors="replace", newline="")
+    try:
+        (datum,) = read_measured(path)
+    except MeasuredError:
+        return
+    assert math.isfinite(datum.value)
+    assert math.isfinite(datum.E_over_N_Td)
+    assert 0.0 < datum.standard_error < math.inf
 
 
 def test_remarks_and_columns_that_may_be_absent(tmp_path):

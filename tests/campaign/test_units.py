@@ -78,6 +78,9 @@ def test_thermal_energy_is_a_unit():
         ("cm2/s", "1/(m s)", "only with the density of the gas. Give temperature_K and pressure_Pa"),
         ("V/(cm Torr) at -300 C", "Td", "has no density"),
         ("5 & 3", "Td", "is not understood"),
+        ("cm22/s", "m/s", "is not understood"),
+        ("m/s at 1.2.3 K", "m/s", "is not understood"),
+        ("10^-999 m/s", "m/s", "no place among numbers"),
     ],
 )
 def test_what_is_unclear_is_refused(unit, wanted, words):

@@ -47,6 +47,13 @@ def test_an_offset_beyond_the_errors_disagrees(verdict_of):
     assert whole.deviation == pytest.approx(-0.1, abs=1e-3)
 
 
+def test_an_offset_that_may_be_common_to_all_data_is_told_so(verdict_of):
+    fields = [*FIELDS, *(1.1 * field for field in FIELDS)]
+    whole = verdict_of(*drifts(fields, off=0.032))[0]
+    assert (whole.trend, whole.probability < 0.05) == ("high", True)
+    assert whole.words == "doubtful: +3.2 % throughout, 1.6 standard errors; agrees if these are common to all data"
+
+
 def test_a_turn_is_told_with_its_place(verdict_of):
     whole = verdict_of(*drifts(FIELDS, off=[-0.03] * 4 + [0.03] * 4))[0]
     # 2 runs of 4 and 4: 2 of 70 orders

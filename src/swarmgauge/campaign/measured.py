@@ -38,6 +38,7 @@ _MAY_BE_EMPTY = ("temperature_K", "pressure_Pa")
 # Standard errors to a stated uncertainty; a limit is the half width of a range within which all values are alike.
 _STANDARD_ERRORS = {"one_sigma": 1.0, "two_sigma": 2.0, "limit": math.sqrt(3.0)}
 _FASTEST = 2.99792458e8  # m/s
+_HIGHEST_TD = 1e6
 _DIGITS = 6  # of reduced fields: a conversion may differ in its last bit, such a text does not
 
 
@@ -186,7 +187,7 @@ def _datum(cells: dict[str, str], place: str) -> Datum:
     value = _checked_value(quantity, to_value * _number(cells, "value"), unit)
     return Datum(
         quantity=quantity,
-        E_over_N_Td=float(f"{to_field * _not_negative(cells, 'E_over_N'):.{_DIGITS}g}"),
+        E_over_N_Td=_checked_field(to_field * _not_negative(cells, "E_over_N")),
         value=value,
         standard_error=_standard_error(cells, value, to_value),
         unit=unit,
@@ -253,7 +254,15 @@ def _optional(cells: dict[str, str], column: str) -> float | None:
     return number
 
 
+def _checked_field(field: float) -> float:
+    if not field <= _HIGHEST_TD:
+        raise MeasuredError(f"column E_over_N: {field:g} Td is no field of a swarm. Check number and unit.")
+    return float(f"{field:.{_DIGITS}g}")
+
+
 def _checked_value(quantity: str, value: float, unit: str) -> float:
+    if not math.isfinite(value):
+        raise MeasuredError("column value: becomes too large a number. Check value and unit.")
     if value < 0.0 and not can_be_negative(quantity):
         raise MeasuredError(f"column value: {value:g} {unit} is negative. {quantity} has one sign; give it without.")
     if unit == "m/s" and value >= _FASTEST:
@@ -269,6 +278,6 @@ def _standard_error(cells: dict[str, str], value: float, to_value: float) -> flo
             f"column uncertainty: {stated:g} is {100 * stated:g} %. If per cent was meant, divide by 100."
         )
     error = stated * (abs(value) if relative else to_value)
-    if not error > 0.0:
-        raise MeasuredError("column uncertainty: no measurement is exact. Give an uncertainty above 0.")
+    if not 0.0 < error < math.inf:
+        raise MeasuredError("column uncertainty: no measurement is exact. Give a number above 0.")
     return error / _STANDARD_ERRORS[_choice(cells, "uncertainty_is", _STANDARD_ERRORS)]

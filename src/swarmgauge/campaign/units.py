@@ -4,6 +4,7 @@ A unit is a product such as cm2/s, 1e-20 m2, V/(cm Torr) or cm-1 Torr-1. A press
 that it means at a temperature, N = p/kT: that of the row, or one that the unit states, as V/(cm Torr) at 273.15 K.
 """
 
+import math
 import re
 from dataclasses import dataclass
 
@@ -44,9 +45,9 @@ _PRESSURES_PA = {
     "atm": 101325.0,
 }
 _THERMAL = "kT"  # as a unit of energies: kT/e in V
-_TOKEN = re.compile(r"\s*(?:([A-Za-z]+)(?:\^?(-?\d+))?|(1)(?![\d.])|([/()*·]))")
+_TOKEN = re.compile(r"\s*(?:([A-Za-z]+)(?:\^?(-?\d)(?!\d))?|(1)(?![\d.])|([/()*·]))")
 _NUMBER = re.compile(r"\s*(10\^-?\d+|\d+(?:\.\d*)?[eE][-+]?\d+)(?=[\s*·/])")
-_TEMPERATURE = re.compile(r"(.*?)\s+at\s+(-?[\d.]+)\s*(K|C)$")
+_TEMPERATURE = re.compile(r"(.*?)\s+at\s+(-?\d+(?:\.\d*)?)\s*(K|C)$")
 
 
 class UnitError(InputError):
@@ -77,11 +78,12 @@ def factor_to(unit: str, wanted: str, temperature_K: float | None, pressure_Pa: 
     for power in (0, 1, -1):
         density = Unit(1.0, _DENSITY)
         if found.times(density, power).powers == goal.powers:
-            return (
-                found.factor
-                / goal.factor
-                * (_density(unit, wanted, temperature_K, pressure_Pa) ** power if power else 1.0)
-            )
+            factor = found.factor / goal.factor
+            if power:
+                factor *= _density(unit, wanted, temperature_K, pressure_Pa) ** power
+            if 0.0 < factor < math.inf:
+                return factor
+            raise UnitError(f'unit "{unit}": its factor has no place among numbers. Give a unit of usual size.')
     raise UnitError(f'unit "{unit}" is none of this quantity, which is in {wanted}. Give its unit.')
 
 

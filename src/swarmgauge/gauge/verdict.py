@@ -1,6 +1,7 @@
 """What a comparison comes to: per quantity and decade of E/N, in numbers and in words."""
 
 import math
+import statistics
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from itertools import groupby
@@ -12,6 +13,8 @@ ALL = "all"
 _DOUBTFUL, _DISAGREES = 0.05, 0.001  # probabilities of chi-squared
 _TREND = 0.05
 _ENOUGH_FOR_TREND = 5
+_ENOUGH_FOR_OFFSET = 3
+_LARGEST_OFFSET = 2.0  # stated standard errors
 
 
 @dataclass(frozen=True)
@@ -102,6 +105,8 @@ def _words(pairs: Sequence[Compared], probability: float, trend: str) -> str:
     worst = max(pairs, key=lambda pair: abs(pair.pull))
     if sum(pair.computed_error > pair.datum.standard_error for pair in pairs) > len(pairs) / 2:
         return "undecided: the computed errors exceed those of the measurement. Ask for more accuracy"
+    if probability < _DOUBTFUL and (common := _common_offset(pairs)):
+        return common
     if probability < _DOUBTFUL:
         grade = "disagrees" if probability < _DISAGREES else "doubtful"
         return f"{grade}{_course(pairs, trend)}; worst at {worst.datum.E_over_N_Td:.4g} Td: {_size(worst)}"
@@ -109,6 +114,26 @@ def _words(pairs: Sequence[Compared], probability: float, trend: str) -> str:
         return f"agrees within its errors, but{_course(pairs, trend)}"
     where = "on average" if len(pairs) > 1 else f"at {worst.datum.E_over_N_Td:.4g} Td"
     return f"agrees ({_per_cent(mean_deviation(pairs))} {where})"
+
+
+def _common_offset(pairs: Sequence[Compared]) -> str:
+    """Words for data that scatter as they should about one offset below two of their errors; "" for others.
+
+    Errors of measured series are often common to all data: then such an offset is no disagreement.
+    """
+    known = [pair for pair in pairs if not math.isnan(pair.deviation)]
+    if len(known) < _ENOUGH_FOR_OFFSET:
+        return ""
+    offset = mean_deviation(known)
+    stated = statistics.median(pair.datum.standard_error / pair.datum.value for pair in known)
+    errors = [math.hypot(pair.datum.standard_error, pair.computed_error) / pair.datum.value for pair in known]
+    about = math.fsum(((pair.deviation - offset) / error) ** 2 for pair, error in zip(known, errors, strict=True))
+    if abs(offset) > _LARGEST_OFFSET * stated or chi_squared_probability(about, len(known) - 1) < _DOUBTFUL:
+        return ""
+    return (
+        f"doubtful: {_per_cent(offset)} throughout, {abs(offset) / stated:.1f} standard errors; agrees if these are "
+        "common to all data"
+    )
 
 
 def _course(pairs: Sequence[Compared], trend: str) -> str:
