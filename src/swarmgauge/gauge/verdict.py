@@ -117,12 +117,12 @@ def _words(pairs: Sequence[Compared], probability: float, trend: str) -> str:
 
 
 def _common_offset(pairs: Sequence[Compared]) -> str:
-    """Words for data that scatter as they should about one offset below two of their errors; "" for others.
+    """Words for data all on one side that scatter as they should about an offset below two of their errors, or "".
 
     Errors of measured series are often common to all data: then such an offset is no disagreement.
     """
     known = [pair for pair in pairs if not math.isnan(pair.deviation)]
-    if len(known) < _ENOUGH_FOR_OFFSET:
+    if len(known) < _ENOUGH_FOR_OFFSET or len({pair.deviation > 0.0 for pair in known}) > 1:
         return ""
     offset = mean_deviation(known)
     stated = statistics.median(pair.datum.standard_error / pair.datum.value for pair in known)
