@@ -3,7 +3,8 @@
 In each speed cell a frequency is linear in speed, chosen so that its integral and its first moment over the cell are
 those of the exact curve: rate integrals then differ from the file's by less than 1e-4, however narrow a structure is.
 A process starts at the first cell edge above its threshold; what lies between is carried into that cell, so that no
-event happens below the threshold and none is lost.
+event happens below the threshold and none is lost. Where the distribution falls steeply there (a tail that drops by e
+within a few cells, 0.4 % of the energy each), the carried part is met less often: up to 0.5 % of such a rate.
 """
 
 import math
