@@ -1,6 +1,7 @@
 """Steady-state Townsend swarms: exact cases, the power balance in space, time-of-flight series, outcomes."""
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -21,7 +22,7 @@ from swarmgauge.swarm.point_run import PointRun, estimates_of, prepare
 from swarmgauge.swarm.quantities import is_spatial
 from swarmgauge.swarm.reduce import Reducer, lab_edges
 from swarmgauge.swarm.schedule import simulate
-from swarmgauge.swarm.spatial import Exponent, local_values, tilted_part
+from swarmgauge.swarm.spatial import NOT_FOUND, Exponent, local_values, tilted_part
 
 NU = 1e-13
 ASKED = {"townsend_*": 0.01, "sst_*": 0.02}
@@ -87,6 +88,23 @@ def test_as_many_born_as_lost(seed):
     effective = estimates["townsend_effective_over_N"]
     assert effective.interval() == (0.0, 0.0)  # to the last bit, as both have the same cross section
     assert reducer.plan.spatial.lever == 0.0
+
+
+def test_close_to_the_balance(seed):
+    # Air at 120 Td, where pilots can hardly tell alpha from 0. D_L alpha / W = 2e-4: alpha = R / W.
+    air = Mixture(
+        {"nitrogen-phelps1985": 0.8, "oxygen-lawton1978": 0.2},
+        temperature_K=293.15,
+        leave_out=("oxygen-lawton1978/attachment-3body",),
+    )
+    reducer, rows = steady(air, 120.0, seed, 8)
+    estimates = estimates_of(reducer, rows)[0]
+    effective, alpha, eta = (estimates[f"townsend_{kind}_over_N"] for kind in ("effective", "alpha", "eta"))
+    first = estimates["net_frequency_over_N"].value / estimates["drift_velocity_bulk"].value
+    error = estimates["net_frequency_over_N"].standard_error / estimates["drift_velocity_bulk"].value
+    assert effective.standard_error < 0.05 * alpha.value
+    assert abs(effective.value - first) < 3.5 * math.hypot(error, effective.standard_error)
+    assert alpha.value - eta.value == pytest.approx(effective.value, abs=1e-9 * alpha.value)
 
 
 def test_power_balance_in_space(seed):
@@ -167,6 +185,17 @@ def test_no_root():
     assert not any(is_spatial(name) for name in point)
     assert "no steady-state Townsend" in point.warnings[0]
     assert point.sst_eedf is None
+
+
+def test_a_growth_that_is_not_found_misses_its_target(seed):
+    mixture, field = Mixture({"model-ionization-f1": 1.0}), Field(200.0)
+    run = PointRun(mixture, field, seed=seed, accuracy=ASKED)
+    run.set_pilot(replace(prepare(mixture, field, seed), spatial_note=NOT_FOUND))
+    for index in range(20):
+        run.add(index, *run_cohort(run.pilot.plan, index))
+    assert run.finished
+    assert run.result().status == "target missed"
+    assert "was not found" in run.result().warnings[0]
 
 
 def test_nothing_is_born_or_lost():

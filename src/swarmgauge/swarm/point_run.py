@@ -18,7 +18,7 @@ from .point import Conditions, EnergyDistribution, Point, TargetStatus
 from .quantities import unit_of
 from .rare import rare_asked
 from .reduce import Reducer, lab_edges_eV
-from .spatial import all_bounds, all_quantities, find_growth, spatial_asked, tilted_part
+from .spatial import NOT_FOUND, all_bounds, all_quantities, find_growth, spatial_asked, tilted_part
 from .targets import parse_accuracy, worst
 from .two_term import TwoTerm
 
@@ -285,7 +285,8 @@ class PointRun:
         spatial = reducer.plan.spatial is not None
         judged = worst(self.targets, estimates, self.field.E_over_N_Td)
         name, excess = max(((n, e) for n, (_, e) in judged.items()), key=lambda pair: pair[1], default=("", 0.0))
-        status = "done" if excess <= 1.0 else ("target missed" if self.finished else "interrupted")
+        reached = excess <= 1.0 and not self._growth_not_found
+        status = "done" if reached else ("target missed" if self.finished else "interrupted")
         above = reducer.time_above_tables(rows)
         ancestors, effective_size = reducer.families(rows)
         return Point(
@@ -307,6 +308,12 @@ class PointRun:
             ancestors=ancestors,
             effective_size=effective_size,
         )
+
+    @property
+    def _growth_not_found(self) -> bool:
+        """Whether targets on the steady-state Townsend swarm cannot be judged, though nothing says that it is not."""
+        pilot = self.pilot
+        return self.spatial and pilot is not None and pilot.plan is not None and pilot.spatial_note == NOT_FOUND
 
     def _warnings(self, above: dict[str, float]) -> tuple[str, ...]:
         lines = []

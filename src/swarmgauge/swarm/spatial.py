@@ -34,6 +34,7 @@ from .targets import Target
 PILOTS = 4  # cohorts for each trial
 MOST_TRIALS = 8
 CLOSE = 0.01  # of alpha, or of NEAR_BALANCE, between the last two trials
+FLAT = 1e-4  # of W / D: trials so close give the same swarm; near the balance pilots cannot tell alpha to CLOSE
 NEAR_BALANCE = 0.1  # of (nu_i + nu_a) / W: below it alpha is "near 0"
 LEAST_SLOPE = 0.1  # of W: an exponent flatter than that has no root, or one that a trial cannot find
 _GROWTHS = {
@@ -41,6 +42,7 @@ _GROWTHS = {
     "attachment": "townsend_eta_over_N",
     "net": "townsend_effective_over_N",
 }
+NOT_FOUND = f"its spatial growth was not found in {MOST_TRIALS} trials"
 NO_ROOT = "its growth exponent has no root: there is no steady-state Townsend swarm"
 
 
@@ -95,16 +97,17 @@ def find_growth(plan: Plan, values: Mapping[str, float]) -> tuple[SpatialGrowth 
     """
     exponent = Exponent.of(values)
     near = NEAR_BALANCE * exponent.change / exponent.drift
+    flat = FLAT * exponent.drift / exponent.diffusion
     alpha = float(f"{exponent.root:.3g}")  # last bits of linear algebra must not reach the swarm
     for trial in range(MOST_TRIALS):
         slope = exponent.slope(alpha)
         if slope < LEAST_SLOPE * exponent.drift:
             return None, NO_ROOT
         before, alpha = alpha, float(f"{alpha + measured_exponent(plan, alpha, trial) / slope:.4g}")
-        if abs(alpha - before) <= CLOSE * max(abs(alpha), near):
-            lever = 1.0 / alpha if abs(alpha) > near else 0.0
+        if abs(alpha - before) <= max(CLOSE * max(abs(alpha), near), flat):
+            lever = 1.0 / alpha if abs(alpha) > max(near, flat) else 0.0
             return SpatialGrowth(alpha, lever), f"spatial growth found in {trial + 1} trials"
-    return None, f"its spatial growth was not found in {MOST_TRIALS} trials"
+    return None, NOT_FOUND
 
 
 def measured_exponent(plan: Plan, alpha: float, trial: int) -> float:
