@@ -287,6 +287,14 @@ FAULTS_BELOW = {
         GAS + "[accuracy]\ndrift_velocity = 0.01\n",
         ("[accuracy]: ", "no such quantity", "drift_velocity_flux"),
     ),
+    "process of no set": (
+        GAS + '[accuracy]\n"rate:argon/ionization" = 0.01\n',
+        (
+            '[accuracy]: accuracy "rate:argon/ionization"',
+            "no mixture here has",
+            "Did you mean argon-yamabe1983/ionization?",
+        ),
+    ),
     "target key": (GAS + "[accuracy]\nmean_energy = { real = 0.01 }\n", ("[accuracy]: ", "real", "Known keys: rel")),
 }
 

@@ -13,7 +13,7 @@ from swarmgauge.gas.errors import suggestion
 from swarmgauge.gas.faults import joined
 from swarmgauge.gas.setfile import parse_toml, read_text
 from swarmgauge.swarm.field import Field
-from swarmgauge.swarm.targets import Target, parse_accuracy
+from swarmgauge.swarm.targets import Target, parse_accuracy, refuse_unknown_processes
 
 from .explain import explain
 from .measured import Datum, fields_of_data, measured_data
@@ -85,6 +85,7 @@ def load_run_file(path: str | Path) -> RunFile:
         targets = _parse_targets(model.accuracy.targets)
         measured = None if model.measured is None else tuple(measured_data(model.measured.files, path.parent))
         points = _points(model, path.parent, measured)
+        _refuse_unknown_processes(targets, points)
     except InputError as error:
         raise RunFileError(joined(str(error).splitlines(), f"{path}, ")) from error
     parameters = model.model_dump(mode="json", by_alias=True)
@@ -123,6 +124,13 @@ def _parse_targets(given: dict[str, Any]) -> tuple[Target, ...]:
         for key in given:
             if near := suggestion(key, _LIMITS):
                 raise RunFileError(f"[accuracy] {key}: unknown key.{near}") from error
+        raise RunFileError(f"[accuracy]: {error}") from error
+
+
+def _refuse_unknown_processes(targets: tuple[Target, ...], points: Sequence[Conditions]) -> None:
+    try:
+        refuse_unknown_processes(targets, {id(point.mixture): point.mixture for point in points}.values())
+    except InputError as error:
         raise RunFileError(f"[accuracy]: {error}") from error
 
 

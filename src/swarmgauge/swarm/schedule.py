@@ -14,6 +14,7 @@ from .cohort import CohortFailure, run_cohort
 from .field import Field
 from .point import Point
 from .point_run import FIRST_COHORTS, PointRun, prepare
+from .targets import refuse_unknown_processes
 
 Watch = Callable[[PointRun], None]
 PREPARE = -1  # stands for the pilot in the list of work
@@ -182,6 +183,7 @@ def simulate(
     Raises InputError for impossible conditions or targets.
     """
     run = PointRun(mixture, field, seed=seed, accuracy=accuracy, max_minutes=max_minutes)
+    refuse_unknown_processes(run.targets, [mixture])
     count = workers or len(os.sched_getaffinity(0))
     with ThreadPoolExecutor(count) as executor:
         drive([run], executor, workers=count)

@@ -2,12 +2,13 @@
 
 import difflib
 import math
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from fnmatch import fnmatchcase
 from typing import Any
 
-from swarmgauge.gas import InputError
+from swarmgauge.gas import InputError, Mixture
+from swarmgauge.gas.errors import suggestion
 
 from .estimate import Estimate
 from .quantities import KNOWN_PATTERNS
@@ -60,6 +61,20 @@ def parse_accuracy(accuracy: Mapping[str, Any] | None) -> tuple[Target, ...]:
     Nothing, or an empty mapping, gives the defaults. Raises InputError naming the key, what was found and what to do.
     """
     return tuple(_target(name, wanted) for name, wanted in (accuracy or DEFAULT_ACCURACY).items())
+
+
+def refuse_unknown_processes(targets: Iterable[Target], mixtures: Iterable[Mixture]) -> None:
+    """Raise InputError for a target on <quantity>:<set>/<process> that none of the mixtures has."""
+    known = {
+        f"{gas.name}/{process.id}" for mixture in mixtures for gas in mixture.gases for process in mixture.acting(gas)
+    }
+    for pattern in (target.pattern for target in targets if ":" in target.pattern):
+        process = pattern.split(":", 1)[1]
+        if not any(fnmatchcase(name, process) for name in (*known, "population_change")):
+            raise InputError(
+                f'accuracy "{pattern}": no mixture here has a process {process}.{suggestion(process, sorted(known))} '
+                "Write <set>/<process>; * stands for anything."
+            )
 
 
 def _target(name: str, wanted: Any) -> Target:
