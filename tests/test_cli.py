@@ -269,7 +269,10 @@ def test_an_interruption_ends_with_130_and_says_how_to_go_on(case, capsys, monke
     monkeypatch.setattr(campaign, "drive", drive)
     assert main(["run", "case.toml"]) == 130
     text = capsys.readouterr().out
-    assert "interrupted: 1 of 3 points are finished and kept. Give the same command again" in unwrapped(text)
+    assert (
+        "interrupted: 1 of 3 points are finished; what there is of the others is kept too. Give the same"
+        in unwrapped(text)
+    )
     assert text.splitlines()[-1] == "case"
     monkeypatch.setattr(campaign, "drive", stand_in_drive)
     assert main(["run", "case.toml"]) == 0

@@ -87,7 +87,7 @@ class StandInRun:
             ancestors=math.nan,
             effective_size=math.nan,
             above_tables={},
-            status="done" if self.worst[1] <= 1 else "target missed",
+            status="done" if self.worst[1] <= 1 else "target missed" if self.finished else "interrupted",
             cohorts=self.cohorts,
             worst=self.worst,
             wall_seconds=0.5,

@@ -1,6 +1,7 @@
 """Run a campaign: all points of a run file on all cores, kept as they finish."""
 
 import json
+import math
 import os
 import time
 from collections.abc import Callable, Iterator
@@ -10,7 +11,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from swarmgauge.swarm.point import Point
-from swarmgauge.swarm.point_run import PointRun, point_key
+from swarmgauge.swarm.point_run import FIRST_COHORTS, PointRun, point_key
 from swarmgauge.swarm.schedule import drive, seconds_left
 
 from .measured import measured_csv
@@ -26,7 +27,8 @@ Watch = Callable[[PointRun], None]
 class Outcome:
     """What a campaign came to.
 
-    folder : where it is. points : key to point, in the order of the run file; only those that are finished.
+    folder : where it is. points : key to point, in the order of the run file; those that are finished, and after an
+    interruption those that have their first round of cohorts, with the status "interrupted".
     asked : number of points asked for. reused : how many were there before. set_aside : damaged point files, each with
     what was wrong. interrupted : by Ctrl-C.
     """
@@ -104,7 +106,8 @@ def run_campaign(
             except KeyboardInterrupt:
                 interrupted = True
         _keep_unfinished(runs, store)
-        points = {run.key: run.result() for run in runs if run.finished}
+        enough = FIRST_COHORTS if interrupted else math.inf
+        points = {run.key: run.result() for run in runs if run.finished or run.cohorts >= enough}
         wall_seconds = time.monotonic() - begin
         _write_tables(store, run_file, points, wall_seconds)
     return Outcome(

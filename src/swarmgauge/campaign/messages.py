@@ -45,14 +45,16 @@ def closing(run_file: RunFile, outcome: Outcome, measured: Sequence[str] = ()) -
     points = list(outcome.points.values())
     yield from table(points)
     yield from measured
-    yield from remedies(points, run_file.max_minutes_per_point)
+    if not outcome.interrupted:
+        yield from remedies(points, run_file.max_minutes_per_point)
     yield from warnings(points)
     for text in outcome.set_aside:
         yield from wrapped(f"~ {text}; set aside as *.damaged and computed anew")
     if outcome.interrupted:
+        finished = sum(point.status != "interrupted" for point in points)
         yield from wrapped(
-            f"interrupted: {len(points)} of {outcome.asked} points are finished and kept. "
-            "Give the same command again to go on from here."
+            f"interrupted: {finished} of {outcome.asked} points are finished; "
+            "what there is of the others is kept too. Give the same command again to go on from here."
         )
     elif len(points) < outcome.asked:
         yield from wrapped(
@@ -119,6 +121,8 @@ def _remedy(point: Point, max_minutes: float) -> str:
     if point.status not in ("target missed", "interrupted"):
         return f"{point.status}: no steady swarm, so no target can be met."
     name, excess = point.worst
+    if excess <= 1.0:
+        return "a quantity with a target was not found; the reason follows."
     status = point.targets.get(name)
     asked = f" of {status.target}" if status is not None else ""
     if not math.isfinite(excess):
