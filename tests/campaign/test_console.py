@@ -102,6 +102,8 @@ def test_a_gas_far_from_the_temperature_of_its_set_is_told():
 def test_a_warning_of_many_points_is_told_once():
     points = [point(field, warnings=("the tail is thin.",)) for field in (10, 20, 30, 40, 50)]
     assert "~ 10 to 50 Td: the tail is thin." in list(warnings(points))
+    again = [point(10, mixture, warnings=("the tail is thin.",)) for mixture in (AIR, ARGON)]
+    assert "~ 10 Td: the tail is thin." in list(warnings(again))
 
 
 def test_warnings_of_one_kind_are_told_for_the_last_point():

@@ -139,7 +139,7 @@ def _remedy(point: Point, max_minutes: float) -> str:
 
 
 def _range(fields: Iterable[str]) -> str:
-    fields = list(fields)
+    fields = list(dict.fromkeys(fields))
     return fields[0] if len(fields) == 1 else f"{fields[0]} to {fields[-1]}" if len(fields) > 3 else ", ".join(fields)
 
 

@@ -57,7 +57,9 @@ def _rows(key: str, point: Conditions, solution: TwoTerm) -> Iterator[list[Any]]
 def preview_lines(preview: Preview) -> Iterator[str]:
     """The table, and where the values are."""
     yield from preview_table([(point.mixture, point.field, solution.values) for _, point, solution in preview.points])
-    unsolved = [point.field.E_over_N_Td for _, point, solution in preview.points if not solution.converged]
+    unsolved = list(
+        dict.fromkeys(point.field.E_over_N_Td for _, point, solution in preview.points if not solution.converged)
+    )
     if unsolved:
         shown = ", ".join(f"{field:g}" for field in unsolved[:8])
         yield from wrapped(f"~ {shown} Td: the solution has not converged; these values are worth little")
