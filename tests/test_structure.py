@@ -125,6 +125,10 @@ def test_one_version():
 HEAVY = ("numpy", "numba", "scipy", "matplotlib", "pydantic", "llvmlite", "tqdm")
 
 
+def test_public_names_can_be_completed():
+    assert {"simulate", "Mixture", "critical_field"} <= set(dir(swarmgauge))
+
+
 def test_help_loads_nothing_heavy():
     code = f"""
 import sys
