@@ -348,5 +348,5 @@ def test_shipped_runs_are_sound(path, capsys, monkeypatch, tmp_path):
 
 
 def test_every_command_has_its_function():
-    for arguments in (["sets"], ["run", "x"]):
+    for arguments in (["sets"], ["check", "x"], ["run", "x"], ["compare", "x"]):
         assert callable(build_parser().parse_args(arguments).run)

@@ -66,7 +66,8 @@ def installed(wheel, tmp_path_factory):
 
 def test_wheel_holds_sets_and_runs(wheel):
     names = set(zipfile.ZipFile(wheel).namelist())
-    for folder, pattern in (("gases", "*.toml"), ("gases", "README.md"), ("runs", "*.toml")):
+    patterns = (("gases", "*.toml"), ("gases", "README.md"), ("runs", "*.toml"), ("runs/measured", "*.csv"))
+    for folder, pattern in patterns:
         shipped = [f"swarmgauge/shipped/{folder}/{path.name}" for path in (ROOT / folder).glob(pattern)]
         assert shipped
         assert set(shipped) <= names
