@@ -17,6 +17,7 @@ _HOME = {
     "simulate": "swarm",
     "simulate_relaxation": "swarm",
     "simulate_difference": "swarm",
+    "two_term_sensitivities": "swarm",
     "water_fraction": "gas",
 }
 __all__ = sorted(_HOME)

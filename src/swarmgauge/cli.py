@@ -6,7 +6,7 @@ import os
 import sys
 from collections.abc import Iterable, Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from . import __version__
 from .gas.errors import InputError
@@ -206,10 +206,21 @@ def _compute(run_file: "RunFile", folder: Path, arguments: argparse.Namespace) -
     comparison = None
     if outcome.points and not outcome.interrupted and run_file.measured is not None:
         comparison = _compare_and_draw(outcome.folder)
+    sensitivity = None
+    if run_file.sensitivity and not outcome.interrupted:
+        from .gauge.sensitivity import run_sensitivity, sensitivity_json, sensitivity_lines
+        from .report import draw_sensitivity
+
+        sensitivity = run_sensitivity(run_file, folder, workers=arguments.workers)
+        draw_sensitivity(sensitivity)
     if shown:
-        _print(closing(run_file, outcome, list(comparison_lines(comparison)) if comparison else []))
+        further = list(comparison_lines(comparison)) if comparison else []
+        further += sensitivity_lines(sensitivity) if sensitivity else []
+        _print(closing(run_file, outcome, further))
     elif arguments.json:
-        found = {"comparison": comparison_json(comparison)} if comparison else {}
+        found: dict[str, Any] = {"comparison": comparison_json(comparison)} if comparison else {}
+        if sensitivity:
+            found["sensitivity"] = sensitivity_json(sensitivity)
         _print([json.dumps({**outcome_json(outcome), **found}, indent=1)])
     if outcome.interrupted:
         return INTERRUPTED

@@ -143,7 +143,8 @@ FAULTS = {
     ),
     "unknown section": (
         GAS + FIELD + "[acuracy]\n",
-        "acuracy: unknown key. Known keys: title, seed, gas, field, accuracy, measured. Did you mean accuracy?",
+        "acuracy: unknown key. Known keys: title, seed, gas, field, accuracy, measured, sensitivity. "
+        "Did you mean accuracy?",
     ),
     "section is a number": ("gas = 3\n" + FIELD, "[gas] = 3: Give a section with its keys."),
     "text for number": (GAS.replace("= 0", '= "warm"') + FIELD, '[gas] temperature_K = "warm": Give a number.'),
@@ -340,7 +341,7 @@ def test_unreadable_files(tmp_path):
 def test_schema_knows_every_key_of_the_file():
     schema = run_file_schema()
     json.dumps(schema)
-    assert set(schema["properties"]) == {"title", "seed", "gas", "field", "accuracy", "measured"}
+    assert set(schema["properties"]) == {"title", "seed", "gas", "field", "accuracy", "measured", "sensitivity"}
     keys = {name: set(part["properties"]) for name, part in schema["$defs"].items()}
     assert keys["Sweep"] == {"from", "to", "per_decade"}
     assert keys["GasSection"] == {

@@ -6,7 +6,15 @@ from pydantic import BaseModel, ValidationError
 
 from swarmgauge.gas.errors import suggestion
 
-from .runfile_model import AccuracySection, FieldSection, GasSection, MeasuredSection, RunFileModel, Sweep
+from .runfile_model import (
+    AccuracySection,
+    FieldSection,
+    GasSection,
+    MeasuredSection,
+    RunFileModel,
+    SensitivitySection,
+    Sweep,
+)
 
 _MODELS: dict[tuple, type[BaseModel]] = {
     (): RunFileModel,
@@ -14,6 +22,7 @@ _MODELS: dict[tuple, type[BaseModel]] = {
     ("field",): FieldSection,
     ("accuracy",): AccuracySection,
     ("measured",): MeasuredSection,
+    ("sensitivity",): SensitivitySection,
     ("field", "E_over_N_Td"): Sweep,
 }
 _REMEDIES = {
@@ -94,6 +103,8 @@ def _without_tags(location: tuple) -> tuple:
 
 def _unknown(location: tuple) -> str:
     known = known_keys(location[:-1])
+    if not known:
+        return "unknown key. The section has none. Remove it."
     return f"unknown key. Known keys: {', '.join(known)}.{suggestion(str(location[-1]), known)}"
 
 

@@ -42,7 +42,7 @@ class RunFile:
     path : where it stands. title, seed : as given, or their defaults. points : in the order of output, fields fastest.
     accuracy : targets as given (empty: the defaults hold), for PointRun. targets : the same, parsed.
     parameters : all keys with defaults filled in. text : the file itself. measured : what the computed coefficients are
-    compared with; None where nothing is.
+    compared with; None where nothing is. sensitivity : whether derivatives by the cross sections are wanted.
     """
 
     path: Path
@@ -56,6 +56,7 @@ class RunFile:
     parameters: dict[str, Any]
     text: str
     measured: tuple[Datum, ...] | None = None
+    sensitivity: bool = False
 
     @property
     def name(self) -> str:
@@ -101,6 +102,7 @@ def load_run_file(path: str | Path) -> RunFile:
         parameters=parameters,
         text=text,
         measured=measured,
+        sensitivity=model.sensitivity is not None,
     )
 
 

@@ -4,7 +4,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import AfterValidator, BaseModel, BeforeValidator, ConfigDict, Discriminator, Field, Tag, WithJsonSchema
 
-SECTIONS_TO_COME = ("sensitivity", "refine", "tables")
+SECTIONS_TO_COME = ("refine", "tables")
 AS_MEASURED = "measured"
 
 
@@ -136,6 +136,10 @@ class MeasuredSection(_Section):
     files: list[str] | None = Field(default=None, min_length=1, examples=[["measured/nitrogen.csv"]])
 
 
+class SensitivitySection(_Section):
+    """Present where derivatives of the coefficients by the cross sections are wanted; it has no keys."""
+
+
 class RunFileModel(_Section):
     """A whole run file."""
 
@@ -145,6 +149,7 @@ class RunFileModel(_Section):
     field: FieldSection
     accuracy: AccuracySection = AccuracySection()
     measured: MeasuredSection | None = None
+    sensitivity: SensitivitySection | None = None
 
 
 def run_file_schema() -> dict[str, Any]:

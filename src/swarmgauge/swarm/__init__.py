@@ -21,6 +21,7 @@ _HOME = {
     "simulate_relaxation": "cathode",
     "simulate_difference": "difference",
     "solve_two_term": "two_term",
+    "two_term_sensitivities": "two_term_sensitivity",
 }
 __all__ = sorted(_HOME)
 

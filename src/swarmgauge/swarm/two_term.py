@@ -73,23 +73,11 @@ def solve_two_term(mixture: Mixture, E_over_N_Td: float, *, cells: int = CELLS) 
     seen for shipped sets: 6e-4), rates that live in the far tail within 6e-3; the error falls as 1 / cells^2.
     Raises InputError for a field that is negative or not finite, and for no field in a cold gas.
     """
-    if not math.isfinite(E_over_N_Td) or E_over_N_Td < 0.0:
-        raise InputError(f"E_over_N_Td = {E_over_N_Td:g}: give a finite reduced field of 0 Td or more.")
-    thermal_eV = BOLTZMANN * mixture.temperature_K / E_CHARGE
-    if E_over_N_Td == 0.0 and thermal_eV == 0.0:
-        raise InputError("E_over_N_Td = 0 at temperature_K = 0: electrons come to rest. Give a field or a temperature.")
-    curves = collision_curves(mixture)
-    field = E_over_N_Td * TOWNSEND or _weak_field(curves, thermal_eV)
-    rough = _rough_solution(curves, field, thermal_eV)
-    grid = _fitted_grid(rough, cells)
-    joint = max(1, int(np.searchsorted(grid.centre, (rough.grid.weight * rough.grid.centre) @ rough.f)))
-    estimate = rough
-    for _ in range(2 if any(channel.superelastic for channel in curves.channels) else 1):
-        operator = EnergyOperator(curves, grid, field, thermal_eV, joint, estimate.log_f)
-        balance, f = steady(operator, guess=estimate.balance.growth)
-        estimate = _Estimate(grid, balance, np.maximum(f, np.finfo(float).tiny))
+    setting = setting_of(mixture, E_over_N_Td, cells)
+    grid = setting.grid
+    balance, f = setting.steady(setting.curves)
     if not np.isfinite(f).all():
-        raise _no_distribution(field)
+        raise _no_distribution(setting.field)
     positive = bool((f > 0.0).all())
     f = np.maximum(f, np.finfo(float).tiny)
     coefficients = transport(balance, f)
@@ -104,6 +92,21 @@ def solve_two_term(mixture: Mixture, E_over_N_Td: float, *, cells: int = CELLS) 
         top_of_grid_share=float(grid.weight[tenth] @ f[tenth]),
         converged=bool(positive and f[-1] < f.max() * math.exp(_ENOUGH_FALL) and outrun < _LARGEST_OUTRUN),
     )
+
+
+def setting_of(mixture: Mixture, E_over_N_Td: float, cells: int = CELLS) -> "Setting":
+    """What a solution starts from; raises InputError as `solve_two_term` does."""
+    if not math.isfinite(E_over_N_Td) or E_over_N_Td < 0.0:
+        raise InputError(f"E_over_N_Td = {E_over_N_Td:g}: give a finite reduced field of 0 Td or more.")
+    thermal_eV = BOLTZMANN * mixture.temperature_K / E_CHARGE
+    if E_over_N_Td == 0.0 and thermal_eV == 0.0:
+        raise InputError("E_over_N_Td = 0 at temperature_K = 0: electrons come to rest. Give a field or a temperature.")
+    curves = collision_curves(mixture)
+    field = E_over_N_Td * TOWNSEND or _weak_field(curves, thermal_eV)
+    rough = _rough_solution(curves, field, thermal_eV)
+    grid = _fitted_grid(rough, cells)
+    joint = max(1, int(np.searchsorted(grid.centre, (rough.grid.weight * rough.grid.centre) @ rough.f)))
+    return Setting(curves, E_over_N_Td, field, thermal_eV, grid, joint, rough)
 
 
 def _no_distribution(field: float) -> InputError:
@@ -131,6 +134,37 @@ class _Estimate:
         slope = math.log(self.f[-1] / self.f[-2]) / self.grid.step[-1]
         inside = np.interp(energy_eV, self.grid.centre, np.log(self.f))
         return inside + slope * np.maximum(energy_eV - self.grid.centre[-1], 0.0)
+
+
+@dataclass(frozen=True, eq=False)
+class Setting:
+    """A mixture in a field on a grid fitted to it; slightly changed cross sections may be solved on the same grid.
+
+    field : V m^2. joint : cell whose balance stays open. rough : a first solution.
+    """
+
+    curves: CollisionCurves
+    E_over_N_Td: float
+    field: float
+    thermal_eV: float
+    grid: Grid
+    joint: int
+    rough: _Estimate
+
+    def steady(self, curves: CollisionCurves) -> tuple[Balance, np.ndarray]:
+        """Balance and f0, (cells,), for these cross sections."""
+        estimate = self.rough
+        for _ in range(2 if any(channel.superelastic for channel in curves.channels) else 1):
+            operator = EnergyOperator(curves, self.grid, self.field, self.thermal_eV, self.joint, estimate.log_f)
+            balance, f = steady(operator, guess=estimate.balance.growth)
+            estimate = _Estimate(self.grid, balance, np.maximum(f, np.finfo(float).tiny))
+        return balance, f
+
+    def values(self, curves: CollisionCurves) -> dict[str, float]:
+        """All quantities of two-term theory for these cross sections."""
+        balance, f = self.steady(curves)
+        f = np.maximum(f, np.finfo(float).tiny)
+        return _values(balance, f, transport(balance, f), self.E_over_N_Td)
 
 
 def _rough_solution(curves: CollisionCurves, field: float, thermal_eV: float) -> _Estimate:

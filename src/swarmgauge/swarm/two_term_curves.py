@@ -60,6 +60,11 @@ class Channel:
         return 0.0 if self.process.passive else self.share * self.bodies * self.population
 
     @property
+    def part_of_momentum(self) -> float:
+        """Part of the momentum transfer that the electron loses to the atom; an attached one loses all of it."""
+        return 1.0 if self.process.kind == "attachment" else 1.0 / (1.0 + self.gas.mass_ratio)
+
+    @property
     def recoil(self) -> float:
         """Part of its energy that an electron loses in an elastic collision with an atom at rest, 2 m M / (m + M)^2.
 
@@ -137,6 +142,22 @@ class CollisionCurves:
         return _Antiderivative(self.mesh, np.stack([self.momentum, self.recoil]), 0)
 
 
+def scaled(curves: CollisionCurves, name: str, factor: float) -> CollisionCurves:
+    """The curves with the cross section of one process, <set>/<process>, times a factor; its reverse follows."""
+    rows = [row for row, channel in enumerate(curves.channels) if channel.name == name]
+    sections, transfers = curves.sections.copy(), curves.transfers.copy()
+    momentum, recoil = curves.momentum.copy(), curves.recoil.copy()
+    for row in rows:
+        channel = curves.channels[row]
+        change = channel.weight * (factor - 1.0) * transfers[row]
+        momentum += change * channel.part_of_momentum
+        if channel.process.kind == "elastic":
+            recoil += change * channel.recoil
+        sections[row] *= factor
+        transfers[row] *= factor
+    return CollisionCurves(curves.channels, curves.mesh, sections, transfers, momentum, recoil)
+
+
 def collision_curves(mixture: Mixture) -> CollisionCurves:
     """Curves of all processes of a mixture that are not left out and of their reverses, in the order of its sets."""
     channels = _channels(mixture)
@@ -148,10 +169,9 @@ def collision_curves(mixture: Mixture) -> CollisionCurves:
     for row, channel in enumerate(channels):
         sections[row, 1:] = channel.section(mesh[1:])
         sections[row, 0] = sections[row, 1]
-        kept = 1.0 if channel.process.kind == "attachment" else 1.0 / (1.0 + channel.gas.mass_ratio)
         transfers[row, 1:] = sections[row, 1:] * (1.0 - channel.kept_momentum(mesh[1:]))
         transfers[row, 0] = transfers[row, 1]
-        momentum += channel.weight * kept * transfers[row]
+        momentum += channel.weight * channel.part_of_momentum * transfers[row]
         if channel.process.kind == "elastic":
             recoil += channel.weight * channel.recoil * transfers[row]
     return CollisionCurves(tuple(channels), mesh, sections, transfers, momentum, recoil)
