@@ -76,8 +76,9 @@ def test_a_campaign_that_ran_out_of_time_is_told_to_take_more():
 def test_a_process_never_seen_asks_for_an_absolute_target():
     missed = point(status="target missed", worst=("net_frequency_over_N", math.inf))
     assert list(table([missed]))[3].endswith(">999!")
-    assert 'net_frequency_over_N was never seen. Raise max_minutes_per_point, or give its target an "abs".' in " ".join(
-        line.strip() for line in remedies([missed], max_minutes=5)
+    assert (
+        'net_frequency_over_N was seen too seldom or never. Raise max_minutes_per_point, or give its target an "abs".'
+        in " ".join(line.strip() for line in remedies([missed], max_minutes=5))
     )
 
 

@@ -126,7 +126,7 @@ def _remedy(point: Point, max_minutes: float) -> str:
     status = point.targets.get(name)
     asked = f" of {status.target}" if status is not None else ""
     if not math.isfinite(excess):
-        return f'{name} was never seen. Raise max_minutes_per_point, or give its target an "abs".'
+        return f'{name} was seen too seldom or never. Raise max_minutes_per_point, or give its target an "abs".'
     spent = point.wall_seconds / 60.0
     needed = 1.2 * spent * excess**2
     raised = f"max_minutes_per_point to about {math.ceil(needed)}"

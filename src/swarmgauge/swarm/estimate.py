@@ -11,10 +11,10 @@ from scipy.special import stdtrit
 class Estimate:
     """A computed quantity.
 
-    value, standard_error, unit : the estimate; the error is NaN where a process was never seen (value 0) and 0 where
-        the value is exact.
+    value, standard_error, unit : the estimate; the error is NaN where a process was never seen (value 0), or in too
+        few excursions to tell an error, and 0 where the value is exact.
     samples : independent cohorts behind it.
-    upper_bound : 95 % upper bound, only where a process was never seen; otherwise NaN.
+    upper_bound : 95 % upper bound, only where a process was never seen or too seldom; otherwise NaN.
     signed : whether the bound is one of the amount of a quantity that may have either sign.
     """
 
@@ -28,8 +28,8 @@ class Estimate:
     def interval(self, level: float = 0.95) -> tuple[float, float]:
         """Central confidence interval at `level` (0.68, 0.95, 0.99, ...) by Student's t with samples - 1 degrees.
 
-        Where a process was never seen: from 0 (or minus the bound, if signed) to the upper bound, whatever the level up
-        to 0.95, NaN above.
+        Where a process was never seen, or too seldom: from 0 (or minus the bound, if signed) to the upper bound,
+        whatever the level up to 0.95, NaN above.
         """
         if not math.isnan(self.upper_bound):
             bound = self.upper_bound if level <= 0.95 else math.nan

@@ -373,7 +373,7 @@ def estimates_of(reducer: Reducer, rows: np.ndarray) -> tuple[dict[str, Estimate
         lambda sums: np.stack(list(all_quantities(reducer, sums).values()), axis=1), rows
     )
     known = dict(zip(names, values.tolist(), strict=True))
-    bounds = all_bounds(reducer, rows, known)
+    bounds = all_bounds(reducer, rows, known, dict(zip(names, errors.tolist(), strict=True)))
     estimates = {}
     for place, name in enumerate(names):
         bound = bounds.get(name, math.nan)

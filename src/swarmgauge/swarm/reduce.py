@@ -1,5 +1,6 @@
 """From sums of cohorts to coefficients: the formulas, each a function of the mean sums."""
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
@@ -30,7 +31,7 @@ from swarmgauge.kernel.history import (
 from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER, speed_edges
 
 from .bin_means import bin_weights
-from .bounds import upper_bounds
+from .bounds import FEW, bound_of_few, upper_bounds
 from .cohort import SumsLayout, layout_of, serial_sum
 from .curves import UNIT_CROSS_SECTION_M2, ProcessCurve
 from .higher_order import energy_diffusion, skewness_flux, skewness_source
@@ -38,6 +39,7 @@ from .maxwellian import MaxwellianRates
 from .plan import RATE_UNIT, Plan
 from .quantities import in_order, needs_displacements
 
+_NET, _PARTS_OF_NET = "net_frequency_over_N", ("ionization_frequency_over_N", "attachment_frequency_over_N")
 SKEWNESS_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2**2  # Q N^2, 1/(m^3 s)
 DIFFUSION_UNIT = SPEED_1_EV / UNIT_CROSS_SECTION_M2  # D N, 1/(m s), of one kernel unit
 
@@ -255,21 +257,29 @@ class Reducer:
         result["energy_balance_residual"] = 1.0 - spent
         return result
 
-    def upper_bounds(self, rows: np.ndarray, known: Mapping[str, float]) -> dict[str, float]:
-        """95 % upper bounds of what was never seen, by name; known : value of every quantity.
+    def upper_bounds(
+        self, rows: np.ndarray, known: Mapping[str, float], errors: Mapping[str, float]
+    ) -> dict[str, float]:
+        """95 % upper bounds of what was never seen or too seldom for an error bar, by name.
 
-        The time is that of all electrons; where they are split, of as many as their weight stands for.
+        known, errors : value and standard error of every quantity. The time is that of all electrons; where they are
+        split, of as many as their weight stands for. A net frequency has one where all that it consists of has.
         """
         windows, alive = (float(rows[:, self.layout.slices[name]].sum()) for name in ("windows", "alive"))
         full = windows * self.plan.electrons
         electron_time = 0.5 * (full + min(alive, full)) * self.plan.window_time
-        curves = enumerate(self.plan.curves + self.plan.passive_curves)
-        names = {number: self._rate_name(curve) for number, curve in curves}
-        unseen = {number: name for number, name in names.items() if known.get(name) == 0.0}
-        bounds = upper_bounds(self.plan, electron_time, unseen)
-        bounds = {name: bound for name, bound in bounds.items() if known.get(name) == 0.0}
-        if any(known.get(f"{kind}_frequency_over_N", 0.0) > 0.0 for kind in ("ionization", "attachment")):
-            bounds.pop("net_frequency_over_N", None)  # seen, and in balance to the last bit
+        names = {n: self._rate_name(curve) for n, curve in enumerate(self.plan.curves + self.plan.passive_curves)}
+        bounds = {}
+        for name, bound in upper_bounds(self.plan, electron_time, names).items():
+            value, error = known.get(name, math.nan), errors.get(name, 0.0)
+            if value == 0.0:
+                bounds[name] = bound
+            elif error > FEW * value > 0.0:
+                bounds[name] = max(bound_of_few(bound, error / value), value + 2.0 * error)
+        parts = [name for name in _PARTS_OF_NET if name in known]
+        bounds.pop(_NET, None)
+        if _NET in known and all(name in bounds for name in parts):
+            bounds[_NET] = max(bounds[name] for name in parts)
         return bounds
 
     def families(self, rows: np.ndarray) -> tuple[float, float]:

@@ -159,18 +159,23 @@ def spatial_quantities(reducer: Reducer, rows: np.ndarray, known: Mapping[str, n
     return result | {f"sst_{name}": value for name, value in moved.items() if ":" in name}
 
 
-def all_bounds(reducer: Reducer, rows: np.ndarray, known: Mapping[str, float]) -> dict[str, float]:
-    """95 % upper bounds of what was never seen, by name; known : value of every quantity."""
-    bounds = reducer.upper_bounds(rows, known)
+def all_bounds(
+    reducer: Reducer, rows: np.ndarray, known: Mapping[str, float], errors: Mapping[str, float]
+) -> dict[str, float]:
+    """95 % upper bounds of what was never seen or too seldom, by name; known, errors : of every quantity."""
+    bounds = reducer.upper_bounds(rows, known, errors)
     if reducer.plan.spatial is None:
         return bounds
     tilted, tilted_rows = tilted_part(reducer, rows)
-    local = {name.removeprefix("sst_"): value for name, value in known.items() if name.startswith("sst_")}
-    for kind, name in _GROWTHS.items():
-        local[f"{kind}_frequency_over_N"] = known.get(name, math.nan)
-    for name, bound in tilted.upper_bounds(tilted_rows, local).items():
+    drift = known["sst_drift_velocity"]
+    local = []  # names, values and errors as the tilted swarm has them for itself
+    for given in (known, errors):
+        own = {name.removeprefix("sst_"): value for name, value in given.items() if name.startswith("sst_")}
+        grown = {f"{kind}_frequency_over_N": given[name] * drift for kind, name in _GROWTHS.items() if name in given}
+        local.append(own | grown)
+    for name, bound in tilted.upper_bounds(tilted_rows, *local).items():
         if ":" in name:
             bounds[f"sst_{name}"] = bound
         else:
-            bounds[_GROWTHS[name.split("_")[0]]] = bound / known["sst_drift_velocity"]
+            bounds[_GROWTHS[name.split("_")[0]]] = bound / drift
     return bounds
