@@ -286,7 +286,7 @@ BAD = {
     "folder for file": (["run", "/"], "there is no such file"),
     "bad key": (
         ["run", "bad.toml"],
-        "bad.toml, fields: unknown key. Known keys: title, seed, gas, field, accuracy, measured.",
+        "bad.toml, fields: unknown key. Known keys: title, seed, gas, field, accuracy, measured, sensitivity.",
     ),
 }
 
