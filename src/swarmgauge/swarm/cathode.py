@@ -11,13 +11,13 @@ import numpy as np
 from swarmgauge.gas import InputError, Mixture
 from swarmgauge.gas.constants import SPEED_1_EV
 from swarmgauge.kernel.cathode import compiled_emission
-from swarmgauge.kernel.cohort import RUNNING, new_workspace
+from swarmgauge.kernel.cohort import FULL, RUNNING, new_workspace
 from swarmgauge.kernel.lookup import LAB_CELLS, LAB_COARSER
 from swarmgauge.kernel.start import seed_streams
 from swarmgauge.kernel.streams import cohort_start
 
 from .bin_means import bin_weights, curve_weights
-from .cohort import MOST_STEPS, CohortFailure, serial_sum
+from .cohort import MOST_STEPS, serial_sum
 from .curves import UNIT_CROSS_SECTION_M2
 from .estimate import jackknife
 from .field import Field
@@ -110,7 +110,7 @@ def simulate_relaxation(
     The density is the time that an emitted electron and its descendants spend at a place, times the emitted flux (for
     a steady current the average over emission times is one over times since emission). Rates are those of electrons
     in a gas at rest; its motion changes them by a part of the order kT m/M over their energy.
-    Raises InputError for impossible conditions.
+    Raises InputError for impossible conditions, and where electrons cannot be followed to the end.
     """
     if not (math.isfinite(Nz) and Nz > 0.0):
         raise InputError(f"Nz = {Nz}: give a depth times gas density above 0, in 1/m^2.")
@@ -149,7 +149,8 @@ def _cohort(
         plan.acceleration, reach, width, histogram, velocity, MOST_STEPS,
     )  # fmt: skip
     if status != RUNNING:
-        raise CohortFailure("electrons fill all lanes" if status == 1 else "electrons do not leave the region")
+        reason = "are born faster than they can be followed" if status == FULL else "do not leave the region"
+        raise InputError(f"Nz: electrons {reason}. Give a smaller depth.")
     return np.concatenate([histogram, velocity])
 
 

@@ -39,8 +39,10 @@ LARGEST_LOSS = 1.2  # of e-foldings by attachment in a window, where memories ar
 MOST_LAGS = 80
 LEAST_FLIGHTS = 2e6  # flights measured in a cohort
 
-_SOURCES = tuple(
-    f"{name}.py" for name in ("plan", "rare", "curves", "tables", "angles", "cohort", "recoil", "pilot", "spatial")
+# Modules that shape the sums of a cohort, besides those of `gas` and `kernel`: a change makes old points of no use.
+_SOURCES = (
+    *("plan", "rare", "curves", "tables", "angles", "cohort", "recoil", "pilot", "spatial", "reduce", "bin_means"),
+    *("two_term", "two_term_curves", "two_term_modes", "two_term_operator"),
 )
 
 
@@ -248,7 +250,8 @@ def plan_key(mixture: Mixture, field: Field, seed: int, rare: tuple[str, ...] = 
     spatial : whether cohorts have a tilted twin.
     """
     folder = Path(__file__).parent
-    method = hashlib.sha256(b"".join((folder / name).read_bytes() for name in _SOURCES)).hexdigest()
+    sources = [*sorted((folder.parent / "gas").glob("*.py")), *(folder / f"{name}.py" for name in _SOURCES)]
+    method = hashlib.sha256(b"".join(path.read_bytes() for path in sources)).hexdigest()
     return _hash(
         {
             "mixture": mixture.canonical(),
