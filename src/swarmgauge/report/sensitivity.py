@@ -81,7 +81,7 @@ def _draw(axes: Axes, points: list[PointSensitivity], quantity: str, chosen: lis
             axes.text(
                 column, row, f"{value:+.2f}", ha="center", va="center", fontsize=5.5, color="white" if dark else "black"
             )
-    axes.set_yticks(range(len(chosen)), chosen, fontsize=6)
+    axes.set_yticks(range(len(chosen)), chosen, fontsize=5.5)
     axes.set_xticks(range(len(points)), [field_text(point.conditions.field) for point in points], fontsize=6)
     axes.grid(False)
     axes.tick_params(length=0)
